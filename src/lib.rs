@@ -2,6 +2,7 @@
 #![warn(missing_docs)]
 pub mod answer;
 pub mod history;
+pub mod mesh;
 pub mod march;
 pub mod material;
 pub mod section;
