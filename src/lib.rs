@@ -2,8 +2,8 @@
 #![warn(missing_docs)]
 pub mod answer;
 pub mod history;
-pub mod mesh;
 pub mod march;
 pub mod material;
+pub mod mesh;
 pub mod section;
 pub mod series;

@@ -99,12 +99,8 @@ fn shortest_time_s(section: &Section, plan: &Plan) -> Option<f64> {
             .iter()
             .filter(|&&time| time > 0.0)
             .map(|&time| {
-                let since = section
-                    .events
-                    .iter()
-                    .map(|event| event.time_s)
-                    .filter(|&event| event < time)
-                    .fold(0.0, f64::max);
+                let since =
+                    section.events.iter().map(|event| event.time_s).filter(|&event| event < time).fold(0.0, f64::max);
                 time - since
             })
             .min_by(f64::total_cmp),
@@ -329,9 +325,7 @@ impl Records {
             Recording::Ends => (None, Vec::new(), 0, false),
             Recording::Steps => (None, Vec::new(), 0, true),
             Recording::Every(interval) => (Some(*interval), Vec::new(), 1, false),
-            Recording::At(times) => {
-                (None, times.iter().copied().filter(|&time| time > 0.0).collect(), 0, false)
-            }
+            Recording::At(times) => (None, times.iter().copied().filter(|&time| time > 0.0).collect(), 0, false),
         };
         Records { every, at, next, steps, stride: 1, seen: 0 }
     }

@@ -204,7 +204,12 @@ mod tests {
                 })
                 .sum::<f64>()
                 / cell.area_m2;
-            assert!((cell.point_m.ln() - mean).abs() < 1e-8, "{inner} to {outer}: {} against {}", cell.point_m.ln(), mean);
+            assert!(
+                (cell.point_m.ln() - mean).abs() < 1e-8,
+                "{inner} to {outer}: {} against {}",
+                cell.point_m.ln(),
+                mean
+            );
         }
         assert!((Cell::new(0.0, 1.0).point_m - (-0.5_f64).exp()).abs() < 1e-15);
     }

@@ -147,13 +147,8 @@ impl Chain {
         for (layer, range) in section.layers.iter().zip(&mesh.layers) {
             add(&layer.material, range);
         }
-        let plain = Link {
-            joint: Joint::Within,
-            resistance: 0.0,
-            film_resistance: 0.0,
-            power_left: 0.0,
-            power_right: 0.0,
-        };
+        let plain =
+            Link { joint: Joint::Within, resistance: 0.0, film_resistance: 0.0, power_left: 0.0, power_right: 0.0 };
         let mut links = vec![plain; cells + 1];
         for (layer, range) in section.layers.iter().zip(&mesh.layers) {
             links[range.start] =
@@ -308,11 +303,7 @@ impl Chain {
                     };
                     let conductance = 1.0 / (lambda_l + lambda_r);
                     let q = (ws.theta[l] - ws.theta[r]) * conductance;
-                    (
-                        q,
-                        (ws.dtheta_dx[l] - q * dl) * conductance,
-                        (-ws.dtheta_dx[r] - q * dr) * conductance,
-                    )
+                    (q, (ws.dtheta_dx[l] - q * dl) * conductance, (-ws.dtheta_dx[r] - q * dr) * conductance)
                 }
                 Joint::Stirred(film) => {
                     let (l, r) = (j - 1, j);

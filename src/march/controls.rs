@@ -110,8 +110,7 @@ impl Controls {
         }
         let last = chain.cells();
         let radius = section.outermost_radius_m();
-        chain.links[last].resistance =
-            self.outside_film.map_or(0.0, |film| Chain::film_resistance(film, radius));
+        chain.links[last].resistance = self.outside_film.map_or(0.0, |film| Chain::film_resistance(film, radius));
     }
 
     /// Puts the content's own boundary into the chain: what lies left of the first layer where no content cell takes part.
@@ -129,7 +128,8 @@ impl Controls {
         };
         if mesh.content.is_empty() || !matches!(joint, Joint::Interface) {
             // The link at the first layer is the inner boundary.
-            chain.links[link].joint = if mesh.content.is_empty() && joint == Joint::Interface { Joint::Closed } else { joint };
+            chain.links[link].joint =
+                if mesh.content.is_empty() && joint == Joint::Interface { Joint::Closed } else { joint };
         } else {
             chain.links[0].joint = Joint::Closed;
             if !bare {

@@ -19,6 +19,8 @@ const LANDING_K: f64 = 1e-6;
 const LANDING_SHARE: f64 = 1e-5;
 /// How far a front may go back behind the face by which it came, in shares of the cell, before the cell gives it back.
 const DEAD_BAND: f64 = 1e-3;
+/// A cell counts as all liquid (or all solid) while what is missing is worth this many temperature tolerances.
+const WHOLE_TOLERANCES: f64 = 20.0;
 /// Shortest step over the time scale of the section.
 const SHORTEST_STEP: f64 = 1e-16;
 
@@ -74,6 +76,8 @@ pub(super) struct Runner<'a> {
     f: Vec<f64>,
     ws: Workspace,
     h_next: Vec<f64>,
+    /// Enthalpy at the scheme's inner stage, for dense output [J/m].
+    h_middle: Vec<f64>,
     x_next: Vec<f64>,
     known: Vec<f64>,
     weight: Vec<f64>,
@@ -114,9 +118,8 @@ impl<'a> Runner<'a> {
         let cells = chain.cells();
         let x: Vec<f64> = (0..cells).map(|cell| chain.material(cell).enthalpy.at(temperature(cell))).collect();
         let h: Vec<f64> = (0..cells).map(|cell| chain.area[cell] * x[cell]).collect();
-        let capacity: f64 = (0..cells)
-            .map(|cell| chain.area[cell] * chain.material(cell).enthalpy.rate(temperature(cell)))
-            .sum();
+        let capacity: f64 =
+            (0..cells).map(|cell| chain.area[cell] * chain.material(cell).enthalpy.rate(temperature(cell))).sum();
         let mut runner = Runner {
             section,
             mesh,
@@ -126,6 +129,7 @@ impl<'a> Runner<'a> {
             controls: Controls::new(section),
             time: 0.0,
             h_next: h.clone(),
+            h_middle: h.clone(),
             x_next: x.clone(),
             f: vec![0.0; cells],
             ws: Workspace::new(cells),
@@ -165,7 +169,8 @@ impl<'a> Runner<'a> {
         let mut sum = 0.0;
         for (index, layer) in self.section.layers.iter().enumerate() {
             let first = self.mesh.layers[index].start;
-            let conductivity = layer.material.conductivity(self.chain.material(first).enthalpy.inverse(self.x[first]).0);
+            let conductivity =
+                layer.material.conductivity(self.chain.material(first).enthalpy.inverse(self.x[first]).0);
             sum += (layer.outside_radius_m / layer.inside_radius_m).ln() / (2.0 * std::f64::consts::PI * conductivity)
                 + layer.contact.resistance_m_k_per_w;
         }
@@ -252,12 +257,17 @@ impl<'a> Runner<'a> {
         } else {
             (&self.h, &self.h_next, &self.x, &self.x_next)
         };
+        // The cubic through the start, an inner stage and the end, with the end's rate. The start's rate is left out: after
+        // a sudden change it is that of a stiff transient, long gone within the step.
         let last = self.scheme.stages - 1;
-        let (t2, t3) = (tau * tau, tau * tau * tau);
-        let (w0, w1) = (2.0 * t3 - 3.0 * t2 + 1.0, -2.0 * t3 + 3.0 * t2);
-        let (d0, d1) = ((t3 - 2.0 * t2 + tau) * dt, (t3 - t2) * dt);
+        let from_middle = 1.0 - self.scheme.c[self.scheme.middle];
+        let from_end = 1.0 - tau;
         for i in self.chain.first..h0.len() {
-            self.dense_h[i] = w0 * h0[i] + w1 * h1[i] + d0 * self.stages[0][i] + d1 * self.stages[last][i];
+            let change = dt * self.stages[last][i];
+            let whole = h0[i] - h1[i] + change;
+            let part = (self.h_middle[i] - h1[i] + from_middle * change) / (from_middle * from_middle);
+            let cubic = (whole - part) / (1.0 - from_middle);
+            self.dense_h[i] = h1[i] + from_end * (from_end * (whole - cubic + cubic * from_end) - change);
             self.dense_x[i] = if self.chain.fronts[i].is_some() {
                 (1.0 - tau) * x0[i] + tau * x1[i]
             } else {
@@ -352,6 +362,11 @@ impl<'a> Runner<'a> {
             for i in first..cells {
                 self.stages[stage][i] = self.chain.net(i, &self.step_ws);
             }
+            if stage == scheme.middle {
+                for i in first..cells {
+                    self.h_middle[i] = self.known[i] + dt * scheme.gamma * self.stages[stage][i];
+                }
+            }
             self.stage_lost[stage] = self.step_ws.q_right[cells];
             self.stage_carried[stage] = match self.chain.links[first].joint {
                 Joint::FixedInside(_) => self.step_ws.q_left[first],
@@ -414,7 +429,10 @@ impl<'a> Runner<'a> {
 
     /// The effort up to now.
     pub fn effort(&self) -> Effort {
-        Effort { newton_iterations: self.ws.iterations + self.step_ws.iterations + self.dense_ws.iterations, ..self.effort }
+        Effort {
+            newton_iterations: self.ws.iterations + self.step_ws.iterations + self.dense_ws.iterations,
+            ..self.effort
+        }
     }
 
     // ---- switching -----------------------------------------------------------------------------------------------
@@ -443,13 +461,13 @@ impl<'a> Runner<'a> {
                     }
                 }
                 for (cell, outer) in [(end - 1, true), (first, false)] {
-                    let has_face = outer
-                        || matches!(self.chain.links[cell].joint, Joint::Interface | Joint::FixedInside(_));
+                    let has_face =
+                        outer || matches!(self.chain.links[cell].joint, Joint::Interface | Joint::FixedInside(_));
                     if has_face && self.chain.fronts[cell].is_none() {
-                        let share = self.chain.frozen_share(cell, &self.x);
-                        if share == 0.0 {
+                        let share = self.plain_share(cell);
+                        if share == Some(0.0) {
                             self.triggers.push(Trigger::Onset { cell, outer, freezing: true });
-                        } else if share == 1.0 {
+                        } else if share == Some(1.0) {
                             self.triggers.push(Trigger::Onset { cell, outer, freezing: false });
                         }
                     }
@@ -596,7 +614,11 @@ impl<'a> Runner<'a> {
             Trigger::Thermostat { heater, on } => {
                 self.controls.called[heater] = on;
                 let count = &mut self.switchings[heater];
-                if on { count.0 += 1 } else { count.1 += 1 }
+                if on {
+                    count.0 += 1
+                } else {
+                    count.1 += 1
+                }
                 let name = &self.section.heaters[heater].name;
                 self.last_event = format!("{name} {}", if on { "on" } else { "off" });
                 self.transition(|_| {})?;
@@ -651,15 +673,20 @@ impl<'a> Runner<'a> {
         (next < self.h.len() && self.chain.region[next] == self.chain.region[cell]).then_some(next)
     }
 
-    /// Frozen share of a cell without a front, from its enthalpy, taken whole within round-off of either end.
+    /// Frozen share of a cell without a front, from its enthalpy, taken whole where it differs from all liquid or all solid
+    /// by no more than the step's tolerance leaves uncertain.
     fn plain_share(&self, cell: usize) -> Option<f64> {
         if self.chain.fronts[cell].is_some() {
             return None;
         }
-        let share = self.chain.material(cell).frozen_share(self.h[cell] / self.chain.area[cell]);
-        Some(if share < 1e-9 {
+        let material = self.chain.material(cell);
+        let share = material.frozen_share(self.h[cell] / self.chain.area[cell]);
+        let slack = material.sharp.map_or(0.0, |sharp| {
+            WHOLE_TOLERANCES * self.settings.temperature_tolerance_k * sharp.capacity_liquid / sharp.latent
+        });
+        Some(if share <= slack {
             0.0
-        } else if share > 1.0 - 1e-9 {
+        } else if share >= 1.0 - slack {
             1.0
         } else {
             share
@@ -803,7 +830,8 @@ impl<'a> Runner<'a> {
         if let ContentState::Stirred { film } = self.controls.content {
             let merged = lump > 0 || self.mesh.content.len() == 1;
             let end = self.mesh.content.end;
-            if lump + 1 < end && self.chain.fronts[lump + 1].is_some_and(|front| front.solid_outside)
+            if lump + 1 < end
+                && self.chain.fronts[lump + 1].is_some_and(|front| front.solid_outside)
                 && self.chain.fronts[lump].is_none()
             {
                 self.chain.links[lump + 1].joint = Joint::Stirred(Chain::stirred_film(film));
@@ -901,11 +929,9 @@ impl<'a> Runner<'a> {
         for i in self.chain.first..self.h.len() {
             let material = self.chain.material(i);
             let part = self.chain.frozen_share(i, &self.x);
-            if let (Some(sharp), true) =
-                (&material.sharp, self.chain.fronts[i].is_some() || (part > 0.0 && part < 1.0))
+            if let (Some(sharp), true) = (&material.sharp, self.chain.fronts[i].is_some() || (part > 0.0 && part < 1.0))
             {
-                share =
-                    share.max((self.f[i] / (sharp.latent * self.chain.region_area[self.chain.region[i]])).abs());
+                share = share.max((self.f[i] / (sharp.latent * self.chain.region_area[self.chain.region[i]])).abs());
             } else {
                 let rate = material.enthalpy.rate(self.ws.temperature[i]);
                 kelvin = kelvin.max((self.f[i] / (self.chain.area[i] * rate)).abs());

@@ -19,6 +19,8 @@ pub(super) struct Scheme {
     pub order: i32,
     /// Diagonal coefficient of the implicit stages.
     pub gamma: f64,
+    /// The stage whose state serves dense output, well inside the step.
+    pub middle: usize,
     /// Times of the stages.
     pub c: [f64; MOST_STAGES],
     /// Coefficients below the diagonal; the last row with `gamma` is the solution's weights.
@@ -41,18 +43,12 @@ pub(super) const THIRD: Scheme = Scheme {
     stages: 4,
     order: 3,
     gamma: G3,
+    middle: 2,
     c: [0.0, 2.0 * G3, 0.6, 1.0, 0.0, 0.0],
     a: [
         [0.0; MOST_STAGES],
         [G3, 0.0, 0.0, 0.0, 0.0, 0.0],
-        [
-            2_746_238_789_719.0 / 10_658_868_560_708.0,
-            -640_167_445_237.0 / 6_845_629_431_997.0,
-            0.0,
-            0.0,
-            0.0,
-            0.0,
-        ],
+        [2_746_238_789_719.0 / 10_658_868_560_708.0, -640_167_445_237.0 / 6_845_629_431_997.0, 0.0, 0.0, 0.0, 0.0],
         [
             1_471_266_399_579.0 / 7_840_856_788_654.0,
             -4_482_444_167_858.0 / 7_529_755_066_697.0,
@@ -79,6 +75,7 @@ pub(super) const FOURTH: Scheme = Scheme {
     stages: 6,
     order: 4,
     gamma: 0.25,
+    middle: 3,
     c: [0.0, 0.5, 83.0 / 250.0, 31.0 / 50.0, 17.0 / 20.0, 1.0],
     a: [
         [0.0; MOST_STAGES],

@@ -302,9 +302,7 @@ fn hold<'a>(
                 on_state = Some((runner.time, state));
                 if cycles > MOST_CYCLES {
                     return Err(MarchError::NoCycle {
-                        reason: format!(
-                            "after {cycles} cycles one still differs from the next by {last_change:.1e} K"
-                        ),
+                        reason: format!("after {cycles} cycles one still differs from the next by {last_change:.1e} K"),
                     });
                 }
             }

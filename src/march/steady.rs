@@ -27,11 +27,7 @@ pub struct Steady {
     pub resistances: Vec<(String, f64)>,
 }
 
-fn prepared<'a>(
-    section: &'a Section,
-    mesh: &'a Mesh,
-    heaters_w_per_m: &[f64],
-) -> Result<Runner<'a>, MarchError> {
+fn prepared<'a>(section: &'a Section, mesh: &'a Mesh, heaters_w_per_m: &[f64]) -> Result<Runner<'a>, MarchError> {
     let outside = section.outside.temperature_k.at(0.0);
     let mut runner = Runner::new(section, mesh, &Settings::default(), |_| outside);
     runner.controls = Controls::new(section);

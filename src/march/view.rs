@@ -185,8 +185,8 @@ impl View<'_> {
                 return self.content_mean();
             }
             let changing = self.mesh.content.clone().any(|cell| {
-                self.chain.fronts[cell].is_some() || (0.0 < self.chain.frozen_share(cell, self.x)
-                    && self.chain.frozen_share(cell, self.x) < 1.0)
+                self.chain.fronts[cell].is_some()
+                    || (0.0 < self.chain.frozen_share(cell, self.x) && self.chain.frozen_share(cell, self.x) < 1.0)
             });
             return interpolate(&self.nodes(Region::Content), radius, !changing && self.chain.first == 0);
         }
@@ -276,9 +276,7 @@ fn interpolate(nodes: &[(f64, f64)], r: f64, smooth: bool) -> f64 {
         let four = &nodes[from..from + 4];
         return (0..4)
             .map(|i| {
-                (0..4)
-                    .filter(|&j| j != i)
-                    .fold(four[i].1, |value, j| value * (r - four[j].0) / (four[i].0 - four[j].0))
+                (0..4).filter(|&j| j != i).fold(four[i].1, |value, j| value * (r - four[j].0) / (four[i].0 - four[j].0))
             })
             .sum();
     }
