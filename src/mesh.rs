@@ -16,7 +16,8 @@
 //!  ln r_point = (r_o^2 ln r_o - r_i^2 ln r_i) / (r_o^2 - r_i^2) - 1/2
 //! ```
 
-use crate::section::Section;
+use crate::material::Material;
+use crate::section::{Change, Section, Start};
 use std::f64::consts::PI;
 use std::ops::Range;
 
@@ -41,6 +42,9 @@ const FEWEST_IN_CONTENT: f64 = 12.0;
 /// A content that freezes has cells at its surface no wider than this share of its radius: young ice grows too fast to
 /// be carried by the quasi-steady profile of one wide cell.
 const FREEZING_FACE_SHARE: f64 = 1.0 / 60.0;
+/// Cells of a freezing content are finer by one plus this many Stefan numbers, up to the largest that is followed.
+const FINER_BY_STEFAN: f64 = 3.0;
+const MOST_STEFAN: f64 = 2.0;
 /// No region is cut finer than this.
 const MOST_IN_REGION: f64 = 2000.0;
 /// States are early where they are asked for within this share of the slowest region's diffusion time after a change.
@@ -109,12 +113,47 @@ fn density_inverse(count: f64, half: f64, dx_face: f64, widest: f64, growth: f64
     }
 }
 
+/// Stefan number that the content's ice can come to: its sub-cooling at the wall when it is frozen through, as sensible over
+/// latent heat. Ice that the lagging keeps near its freezing point has next to none, and few cells follow its front.
+///
+/// ```text
+///  Ste = rho c (T_f - T_outside) / (rho L) * R_ice / (R_ice + R_outside),    R_ice = 1 / (4 pi k)
+/// ```
+fn stefan_number(section: &Section, material: &Material) -> f64 {
+    let Some((solidus, liquidus)) = material.freezing_k else { return 0.0 };
+    let mut coldest = section.outside.temperature_k.range().0;
+    for event in &section.events {
+        if let Change::OutsideTemperature(series) = &event.change {
+            coldest = coldest.min(series.range().0);
+        }
+    }
+    // A cold start melts with the same sensible heat.
+    if let Start::Uniform(temperature) = section.start {
+        coldest = coldest.min(temperature);
+    }
+    let latent = material.enthalpy.at(liquidus) - material.enthalpy.at(solidus - 1e-9);
+    let capacity = material.enthalpy.rate(solidus - 1.0);
+    let ice = 1.0 / (4.0 * PI * material.conductivity(solidus - 1.0));
+    let mut outside: f64 = section
+        .layers
+        .iter()
+        .map(|layer| {
+            let ratio = layer.outside_radius_m / layer.inside_radius_m;
+            ratio.ln() / (2.0 * PI * layer.material.conductivity(liquidus)) + layer.contact.resistance_m_k_per_w
+        })
+        .sum();
+    if let Some(film) = section.outside.film {
+        outside += 1.0 / (2.0 * PI * section.outermost_radius_m() * film);
+    }
+    (capacity * (liquidus - coldest).max(0.0) / latent * ice / (ice + outside)).min(MOST_STEFAN)
+}
+
 impl Mesh {
     /// Cuts a section. `shortest_s` is the shortest time after a sudden change at which an answer is wanted, `None` for
     /// the default of a hundredth of the slowest region's diffusion time; `refinement` multiplies the number of cells.
     pub fn new(section: &Section, refinement: f64, shortest_s: Option<f64>) -> Self {
         let reference_k = section.outside.temperature_k.at(0.0);
-        let diffusivity = |material: &crate::material::Material| {
+        let diffusivity = |material: &Material| {
             let temperature = material.freezing_k.map_or(reference_k, |(_, liquidus)| liquidus + 1.0);
             material.conductivity(temperature) / material.enthalpy.rate(temperature)
         };
@@ -136,17 +175,19 @@ impl Mesh {
             if material.freezing_k.is_none() && diffusion_time_s(radius, alpha) < THIN_SHARE * shortest {
                 push_even(&mut cells, 0.0, radius, refinement);
             } else {
-                let widest = radius / FEWEST_IN_CONTENT;
+                let finer = 1.0 + FINER_BY_STEFAN * stefan_number(section, material);
+                let widest = radius / (FEWEST_IN_CONTENT * finer);
+                let growth = grading.growth / finer;
                 let mut dx_face = grading.face_share * (alpha * shortest).sqrt();
                 if material.freezing_k.is_some() {
-                    dx_face = dx_face.min(FREEZING_FACE_SHARE * radius);
+                    dx_face = dx_face.min(FREEZING_FACE_SHARE * radius / finer.powf(1.5));
                 }
                 let dx_face = dx_face.clamp(radius / MOST_IN_REGION, widest);
-                let count = density_integral(radius, dx_face, widest, grading.growth);
+                let count = density_integral(radius, dx_face, widest, growth);
                 let whole = (count.ceil() * refinement).round().max(1.0) as usize;
                 let edge = |index: usize| {
                     let from_face = (whole - index) as f64 / whole as f64 * count;
-                    (radius - density_inverse(from_face, radius, dx_face, widest, grading.growth)).max(0.0)
+                    (radius - density_inverse(from_face, radius, dx_face, widest, growth)).max(0.0)
                 };
                 push_edges(&mut cells, 0.0, radius, whole, edge);
             }
