@@ -1,8 +1,10 @@
 //! Stillwarm: transient answers for electrically heated lines.
 #![warn(missing_docs)]
 pub mod answer;
+pub mod faults;
 pub mod history;
 pub mod march;
 pub mod material;
 pub mod section;
 pub mod series;
+pub mod units;
