@@ -461,7 +461,7 @@ fn normalise(spelling: &str) -> Option<(Vec<String>, Vec<String>)> {
         if letter == '/' {
             is_below = true;
             rest = &rest[1..];
-        } else if letter.is_whitespace() || "().".contains(letter) {
+        } else if letter.is_whitespace() || "().-".contains(letter) {
             rest = &rest[letter.len_utf8()..];
         } else {
             let (symbol, length) = leading_symbol(rest)?;
@@ -470,7 +470,6 @@ fn normalise(spelling: &str) -> Option<(Vec<String>, Vec<String>)> {
             let exponent = rest[usize::from(is_inverse)..].chars().next().filter(char::is_ascii_digit);
             rest = match exponent {
                 Some(_) => &rest[usize::from(is_inverse) + 1..],
-                None if is_inverse => &rest[1..], // a hyphen between factors, as in `BTU-in`
                 None => rest,
             };
             let power = exponent.filter(|&digit| digit != '1').map_or(String::new(), String::from);
@@ -551,7 +550,7 @@ mod tests {
         close(Kind::Number, "2.5", 2.5);
     }
 
-    /// NIST SP 811 appendix B.8 rounds these to seven digits (from memory).
+    /// NIST SP 811 appendix B.8 rounds these to seven digits (from memory): half a unit of the seventh is 5e-7 at most.
     #[test]
     fn customary_units_agree_with_the_published_factors() {
         for (kind, text, published) in [
@@ -567,7 +566,7 @@ mod tests {
             (Kind::Power, "1 BTU/h", 0.293_071_1),
         ] {
             let value = parse(kind, text).unwrap_or_else(|fault| panic!("{text}: {fault}"));
-            assert!((value / published - 1.0).abs() < 2e-7, "{text}: {value}, not {published}");
+            assert!((value / published - 1.0).abs() <= 5e-7, "{text}: {value}, not {published}");
         }
         close(Kind::Resistance, "1 h ft degF/BTU", 1.0 / parse(Kind::Conductivity, "1 BTU/(h ft degF)").unwrap());
     }
