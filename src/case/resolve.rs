@@ -20,6 +20,8 @@ use std::sync::Arc;
 
 /// A table of properties may be left by so much before a warning [K]: common practice, no source.
 const BEYOND_TABLE_K: f64 = 10.0;
+/// The same for built-in materials, whose tables seldom begin below 0 degC though little changes there [K].
+const BEYOND_BUILT_IN_K: f64 = 50.0;
 /// Most records of one run.
 const MOST_RECORDS: f64 = 1e6;
 
@@ -611,29 +613,40 @@ fn report_beyond_tables(case: &Case, section: &Section, faults: &mut Faults) {
         }
     }
 
-    let of_content = case.content.as_ref().and_then(|raw| raw.material.as_ref()).zip(section.content.material.as_ref());
-    let of_layers = case
-        .layers
-        .iter()
-        .zip(&section.layers)
-        .filter_map(|(raw, layer)| Some((raw.material.as_ref()?, &layer.material)));
-    let mut told: Vec<&str> = Vec::new();
-    for (name, material) in of_content.into_iter().chain(of_layers) {
-        let (low_k, high_k) = material.covers_k;
-        let is_left = coldest_k < low_k - BEYOND_TABLE_K || hottest_k > high_k + BEYOND_TABLE_K;
-        if low_k == high_k || !is_left || told.contains(&material.name.as_str()) {
-            continue;
+    let degc = |low_k: f64, high_k: f64| format!("{:.0} to {:.0} degC", low_k - 273.15, high_k - 273.15);
+    for raw in &case.materials {
+        let (solidus_k, liquidus_k) = raw.freezes_at.map_or((f64::INFINITY, 0.0), |range| range.value);
+        // A phase is asked only for the temperatures at which it is there.
+        for (property, low_k, high_k) in [
+            (&raw.conductivity, coldest_k.max(liquidus_k), hottest_k),
+            (&raw.specific_heat, coldest_k.max(liquidus_k), hottest_k),
+            (&raw.solid_conductivity, coldest_k, hottest_k.min(solidus_k)),
+            (&raw.solid_specific_heat, coldest_k, hottest_k.min(solidus_k)),
+        ] {
+            let Some(raw::Property { rows, span }) = property else { continue };
+            let [(Some(first_k), _), .., (Some(last_k), _)] = rows.as_slice() else { continue };
+            if low_k < first_k - BEYOND_TABLE_K || high_k > last_k + BEYOND_TABLE_K {
+                faults.push(
+                    Fault::warning(*span, "the case names temperatures beyond this table")
+                        .label(format!("covers {}; beyond, its end values are taken", degc(*first_k, *last_k)))
+                        .note(format!("the case names temperatures of {}", degc(coldest_k, hottest_k))),
+                );
+            }
         }
-        told.push(&material.name);
-        let range = |low_k: f64, high_k: f64| format!("{:.0} to {:.0} degC", low_k - 273.15, high_k - 273.15);
-        faults.push(
-            Fault::warning(name.span, format!("the case goes beyond the table of {}", quoted(&material.name)))
-                .label("its end values are taken")
-                .note(format!(
-                    "the table covers {}; the case names temperatures of {}",
-                    range(low_k, high_k),
-                    range(coldest_k, hottest_k)
-                )),
-        );
+    }
+    let mut told: Vec<&str> = Vec::new();
+    for (raw, layer) in case.layers.iter().zip(&section.layers) {
+        let (Some(name), material) = (&raw.material, &layer.material) else { continue };
+        let (low_k, high_k) = material.covers_k;
+        let is_left = coldest_k < low_k - BEYOND_BUILT_IN_K || hottest_k > high_k + BEYOND_BUILT_IN_K;
+        let is_asked = !material.provenance.own && material.freezing_k.is_none() && low_k < high_k;
+        if is_asked && is_left && !told.contains(&material.name.as_str()) {
+            told.push(&material.name);
+            faults.push(
+                Fault::warning(name.span, format!("the case goes far beyond the table of {}", quoted(&material.name)))
+                    .label(format!("covers {}; beyond, its end values are taken", degc(low_k, high_k)))
+                    .note(format!("the case names temperatures of {}", degc(coldest_k, hottest_k))),
+            );
+        }
     }
 }
