@@ -44,7 +44,7 @@ pub struct Loaded {
 /// Every fault of the file and of the overrides (`path=value`), warnings among them.
 pub fn load(path: &Path, overrides: &[String]) -> Result<Loaded, Faults> {
     let name = path.display().to_string();
-    match text_file::read(path, MOST_BYTES) {
+    match text_file::read(path, &name, MOST_BYTES) {
         Ok(text) => load_text(&name, &text, path.parent().unwrap_or(Path::new("")), overrides),
         Err(fault) => {
             let mut faults = Faults::default();

@@ -19,6 +19,9 @@ const FAHRENHEIT_K: f64 = 5.0 / 9.0;
 const HOUR_S: f64 = 3600.0;
 const BTU_PER_HOUR_W: f64 = BTU_J / HOUR_S;
 
+/// What a contact between layers may be stated as.
+pub const CONTACT: &[Kind] = &[Kind::Film, Kind::Resistance];
+
 /// What a quantity is.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
 pub enum Kind {
@@ -53,24 +56,32 @@ pub enum Kind {
 }
 
 impl Kind {
-    /// What it is called in a message, with its article.
+    /// What it is called in a message, without an article.
     pub fn name(self) -> &'static str {
         match self {
-            Kind::Length => "a length",
-            Kind::Temperature => "a temperature",
-            Kind::TemperatureDifference => "a temperature difference",
-            Kind::Time => "a time",
-            Kind::Output => "an output per length of heater",
-            Kind::Film => "a film coefficient or contact conductance",
-            Kind::Resistance => "a thermal resistance of a length of line",
-            Kind::Conductivity => "a conductivity",
-            Kind::Density => "a density",
-            Kind::SpecificHeat => "a specific heat",
-            Kind::LatentHeat => "a latent heat",
-            Kind::Power => "a power",
-            Kind::Share => "a share",
-            Kind::Number => "a plain number",
+            Kind::Length => "length",
+            Kind::Temperature => "temperature",
+            Kind::TemperatureDifference => "temperature difference",
+            Kind::Time => "time",
+            Kind::Output => "heater output per length",
+            Kind::Film => "film coefficient",
+            Kind::Resistance => "resistance of a length of line",
+            Kind::Conductivity => "conductivity",
+            Kind::Density => "density",
+            Kind::SpecificHeat => "specific heat",
+            Kind::LatentHeat => "latent heat",
+            Kind::Power => "power",
+            Kind::Share => "share",
+            Kind::Number => "plain number",
         }
+    }
+
+    /// What any of several kinds is called in a message, without an article.
+    pub fn name_of_any(kinds: &[Kind]) -> String {
+        if kinds == CONTACT {
+            return "contact".into();
+        }
+        kinds.iter().map(|kind| kind.name()).collect::<Vec<_>>().join(" or ")
     }
 
     /// A quantity of this kind as it is written, for hints.
@@ -297,16 +308,16 @@ impl QuantityFault {
 
 impl fmt::Display for QuantityFault {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        let wanted = self.wanted.iter().map(|kind| kind.name()).collect::<Vec<_>>().join(" or ");
+        let wanted = Kind::name_of_any(&self.wanted);
         match &self.reason {
-            Reason::Empty => write!(f, "{wanted} is missing"),
-            Reason::NoNumber => write!(f, "{wanted} starts with a number"),
-            Reason::Comma(_) => write!(f, "a decimal comma in {wanted}"),
-            Reason::TooLarge => write!(f, "the number of {wanted} is too large to hold"),
-            Reason::NoUnit => write!(f, "{wanted} needs its unit"),
+            Reason::Empty => write!(f, "a {wanted} is missing"),
+            Reason::NoNumber => write!(f, "a {wanted} starts with a number"),
+            Reason::Comma(_) => write!(f, "a decimal comma in a {wanted}"),
+            Reason::TooLarge => write!(f, "the number of a {wanted} is too large to hold"),
+            Reason::NoUnit => write!(f, "a {wanted} needs its unit"),
             Reason::OtherKind(unit, kind) => write!(f, "`{unit}` is a unit of {}, not of {wanted}", kind.name()),
             Reason::UnknownUnit(unit) => write!(f, "`{unit}` is not a known unit of {wanted}"),
-            Reason::UnitOfNumber(unit) => write!(f, "{wanted} has no unit, not even `{unit}`"),
+            Reason::UnitOfNumber(unit) => write!(f, "a {wanted} has no unit, not even `{unit}`"),
         }
     }
 }

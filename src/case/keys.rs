@@ -2,6 +2,8 @@
 //!
 //! A key of later work stands here as [`Standing::Later`]: it is refused as not yet modelled, never ignored.
 
+use crate::faults::nearest;
+
 /// Whether a key is modelled.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub enum Standing {
@@ -42,6 +44,11 @@ impl Table {
     /// A key by its name.
     pub fn find(&self, name: &str) -> Option<&'static Key> {
         self.keys.iter().find(|key| key.name == name)
+    }
+
+    /// The key spelt most like a word that is none, if one is.
+    pub fn nearest(&self, word: &str) -> Option<&'static str> {
+        nearest(word, self.keys.iter().map(|key| key.name))
     }
 
     /// The modelled keys in one line.

@@ -96,9 +96,10 @@ fn set(node: &mut Node, path: &[Step], value: Node, source: usize) -> Result<(),
         _ => Err(Box::new(
             Fault::error(
                 span,
-                format!("{} is no step of the path: before it stands {}", quoted(&step.name), node.what()),
+                format!("the path leads no further: before {} stands {}", quoted(&step.name), node.what()),
             )
-            .label("leads no further"),
+            .label("no key of a table")
+            .help("take this step out of the path"),
         )),
     }
 }

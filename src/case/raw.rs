@@ -6,7 +6,7 @@
 use super::keys;
 use super::walk::{Fields, Node, Value, list_of, quantity_of, tolerance_of};
 use crate::faults::{Fault, Faults, Span, nearest, quoted};
-use crate::units::Kind;
+use crate::units::{CONTACT, Kind};
 
 /// A value with its place in the text.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -81,6 +81,8 @@ pub struct Content {
     pub span: Span,
     /// `material`.
     pub material: Option<Located<String>>,
+    /// Whether the material is missing without a word.
+    pub lacks_material: bool,
     /// `state` with what belongs to it, or `held_at`.
     pub state: Option<Located<State>>,
     /// `diameter`.
@@ -358,7 +360,7 @@ impl Case {
         let fields = Fields::open(root, &keys::CASE, faults)?;
         let require_table = |name, table, faults: &mut Faults| {
             let found = fields.table(name, table, faults);
-            if fields.get(name).is_none() {
+            if !fields.says(&[name]) {
                 faults.push(
                     Fault::error(fields.span, format!("the case has no [{name}]"))
                         .label("not in this file")
@@ -424,7 +426,13 @@ impl Content {
             }
         };
         let diameter = positive(fields.quantity("diameter", Kind::Length, faults), faults);
-        Content { span: fields.span, material: fields.text("material", faults), state, diameter }
+        Content {
+            span: fields.span,
+            material: fields.text("material", faults),
+            lacks_material: !fields.says(&["material"]),
+            state,
+            diameter,
+        }
     }
 }
 
@@ -482,8 +490,14 @@ impl Layer {
         let outside_diameter = size("outside_diameter", faults);
         let thickness = size("thickness", faults);
         let pipe = fields.text("pipe", faults);
-        let stated = fields.present(&["pipe", "inside_diameter", "outside_diameter", "thickness"]).len();
-        let read = [inside_diameter.is_some(), outside_diameter.is_some(), thickness.is_some(), pipe.is_some()];
+        let has_faulty_size = [
+            ("inside_diameter", inside_diameter.is_none()),
+            ("outside_diameter", outside_diameter.is_none()),
+            ("thickness", thickness.is_none()),
+            ("pipe", pipe.is_none()),
+        ]
+        .into_iter()
+        .any(|(key, is_none)| is_none && fields.says(&[key]));
         Layer {
             span: fields.span,
             name: fields.required_text("name", faults),
@@ -492,7 +506,7 @@ impl Layer {
             inside_diameter,
             outside_diameter,
             thickness,
-            has_faulty_size: stated > read.into_iter().filter(|&is_read| is_read).count(),
+            has_faulty_size,
             contact: fields.get("contact").and_then(|node| Contact::read(node, faults)),
         }
     }
@@ -509,7 +523,7 @@ impl Contact {
             options.extend(CONTACT_RANGES.iter().map(|range| (range.words, Contact::Words(range))));
             return choice(&words, "contact", &options, &[], faults).and_then(at);
         }
-        let quantity = quantity_of(node, &[Kind::Film, Kind::Resistance], faults)?;
+        let quantity = quantity_of(node, CONTACT, faults)?;
         let quantity = if quantity.kind == Kind::Film { conducting(Some(quantity), faults)? } else { quantity };
         at(Contact::Stated(quantity))
     }
@@ -645,7 +659,7 @@ fn freezing_range(node: &Node, faults: &mut Faults) -> Option<Located<(f64, f64)
 impl Heater {
     fn read(fields: Fields<'_>, faults: &mut Faults) -> Heater {
         fields.at_most_one(&["face", "through"], "a heater lies on a face or is spread through a layer", faults);
-        if fields.present(&["face", "through"]).is_empty() {
+        if !fields.says(&["face", "through"]) {
             faults.push(
                 Fault::error(fields.span, "[[heater]] needs `face` or `through`: where it releases its heat")
                     .label("where is it?")
@@ -733,9 +747,8 @@ impl Outside {
         fields.at_most_one(&["held_at", "film"], held, faults);
         if fields.key_span("held_at").is_none() {
             for key in ["air", "film"] {
-                let has_other_film =
-                    key == "film" && ["wind", "buried", "depth", "soil"].iter().any(|key| fields.has(key));
-                if !has_other_film {
+                // Wind, radiation and soil stand for a film.
+                if key != "film" || !fields.has_later() {
                     fields.require(key, faults);
                 }
             }
@@ -756,6 +769,9 @@ impl Start {
         const WAYS: [&str; 3] = ["temperature", "state", "reading"];
         fields.at_most_one(&WAYS, "the line starts in one way", faults);
         let Some((way, _)) = fields.present(&WAYS).first().copied() else {
+            if fields.says(&WAYS) || fields.has_later() {
+                return None;
+            }
             faults.push(
                 Fault::error(fields.span, "[start] needs `temperature`, `state` or `reading`")
                     .label("how does it start?")
@@ -846,7 +862,7 @@ impl Change {
                 conducting(fields.quantity("film", Kind::Film, faults), faults).map(Change::Film)
             }
             None => {
-                if !keys::EVENT.keys.iter().any(|key| !key.is_modelled() && fields.has(key.name)) {
+                if !fields.says(&SUBJECTS) && !fields.says(&["film"]) && !fields.has_later() {
                     faults.push(
                         Fault::error(fields.span, "[[event]] changes nothing")
                             .label("what happens?")
@@ -880,6 +896,9 @@ impl Condition {
         const WAYS: [&str; 4] = ["below", "above", "frozen", "thawed"];
         fields.at_most_one(&WAYS, "one [[limit]] holds one condition; write two", faults);
         let Some((way, _)) = fields.present(&WAYS).first().copied() else {
+            if fields.says(&WAYS) {
+                return None;
+            }
             faults.push(
                 Fault::error(fields.span, "[[limit]] needs a condition: `below`, `above`, `frozen` or `thawed`")
                     .label("passed when?"),
@@ -943,7 +962,7 @@ fn positive(quantity: Option<Quantity>, faults: &mut Faults) -> Option<Quantity>
         return Some(quantity);
     }
     faults.push(
-        Fault::error(quantity.span, format!("{} of nothing: it must be above 0", quantity.kind.name())).label("zero"),
+        Fault::error(quantity.span, format!("a {} of nothing: it must be above 0", quantity.kind.name())).label("zero"),
     );
     None
 }
@@ -985,7 +1004,7 @@ fn choice<T: Copy>(
         faults.push(
             Fault::error(word.span, format!("`{key} = \"{name}\"` is not yet modelled"))
                 .label("not yet modelled")
-                .note(format!("it is meant for {about}")),
+                .note(format!("meant for {about}")),
         );
         return None;
     }

@@ -128,7 +128,7 @@ fn content(
     let raw = case.content.as_ref()?;
     let material = raw.material.as_ref().map(|name| materials.find(name, faults));
     match (&raw.material, states.iter().find(|(_, state)| is_material(state))) {
-        (None, Some((_, state))) => faults.push(
+        (None, Some((_, state))) if raw.lacks_material => faults.push(
             Fault::error(raw.span, "[content] needs `material`: what is inside")
                 .label("`material` is missing")
                 .also(state.span, "of this"),
@@ -174,7 +174,7 @@ fn content(
         faults.push(Fault::error(span, "an empty content without a layer is nothing at all").label("no heat path"));
     }
     let state = content_state(&raw.state.as_ref()?.value);
-    // A material that could not be found has been told.
+    // A material that is missing or could not be found has been told.
     let material = material.map_or(Some(None), |found| found.map(Some))?;
     Some(Content { radius_m: radius_m?, material, state })
 }
@@ -443,7 +443,8 @@ fn frozen(share: Quantity, places: &Places, content: Option<&Content>, faults: &
         // A content that could not be read has been told.
         None if content.is_none() => return Some(share.value_si),
         Some(material) if material.freezing_k.is_none() => format!("`{}` has no freezing point", material.name),
-        Some(_) if places.has_content => return Some(share.value_si),
+        // So has a material that is missing.
+        _ if places.has_content => return Some(share.value_si),
         _ => "there is no content that could freeze".to_owned(),
     };
     faults.push(

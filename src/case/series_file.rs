@@ -44,7 +44,7 @@ impl<'a> SeriesFiles<'a> {
     pub fn temperature(&mut self, wanted: &SeriesFile, faults: &mut Faults) -> Option<Series> {
         let path = self.folder.join(&wanted.file.value);
         if !self.read.contains_key(&path) {
-            let found = match text_file::read(&path, MOST_BYTES) {
+            let found = match text_file::read(&path, &wanted.file.value, MOST_BYTES) {
                 Ok(text) => Some((faults.add_source(wanted.file.value.clone(), text.clone()), text)),
                 Err(fault) => {
                     faults.push(

@@ -1,5 +1,6 @@
 //! Reading a text file that a person wrote, with a remedy for each way in which that fails.
 
+use crate::faults::quoted;
 use std::fs::File;
 use std::io::Read;
 use std::path::Path;
@@ -15,20 +16,20 @@ fn unreadable(message: impl Into<String>, help: &str) -> Unreadable {
     Unreadable { message: message.into(), help: (!help.is_empty()).then(|| help.to_owned()) }
 }
 
-/// The text of a file, without its byte-order mark; at most `most_bytes`.
-pub(super) fn read(path: &Path, most_bytes: u64) -> Result<String, Unreadable> {
-    let shown = path.display();
+/// The text of a file, without its byte-order mark; at most `most_bytes`. Messages call the file by `name`.
+pub(super) fn read(path: &Path, name: &str, most_bytes: u64) -> Result<String, Unreadable> {
+    let shown = quoted(name);
     if path.is_dir() {
         return Err(unreadable(format!("{shown} is a folder, not a file"), "name the file inside it"));
     }
     let not_read = |error: std::io::Error| match error.kind() {
         std::io::ErrorKind::NotFound => {
-            let help = if path.to_string_lossy().contains(['\\', '\t', '\n', '\r', '\u{8}', '\u{c}']) {
-                "a backslash does not separate folders here: write the path with `/`"
+            let help = if name.contains(['\\', '\t', '\n', '\r', '\u{8}', '\u{c}']) {
+                "a backslash is no separator of folders here: write the path with `/`"
             } else {
                 ""
             };
-            unreadable(format!("there is no file {}", shown.to_string().escape_debug()), help)
+            unreadable(format!("there is no file {shown}"), help)
         }
         std::io::ErrorKind::PermissionDenied => {
             unreadable(format!("{shown} may not be read"), "ask for the permission")
@@ -73,17 +74,20 @@ mod tests {
         let message = |name: &str, bytes: &[u8]| {
             let path = folder.path().join(name);
             std::fs::write(&path, bytes).unwrap();
-            read(&path, 1 << 20).map_err(|fault| fault.message.replace(&path.display().to_string(), "FILE"))
+            read(&path, "FILE", 1 << 20).map_err(|fault| fault.message)
         };
         assert_eq!(message("mark", b"\xef\xbb\xbfa"), Ok("a".into()));
-        assert_eq!(message("wide", b"\xff\xfea\0"), Err("FILE is not UTF-8 text but UTF-16, or no text at all".into()));
-        assert_eq!(message("bare", b"a\0b\0"), Err("FILE is not UTF-8 text but UTF-16, or no text at all".into()));
+        assert_eq!(
+            message("wide", b"\xff\xfea\0"),
+            Err("`FILE` is not UTF-8 text but UTF-16, or no text at all".into())
+        );
+        assert_eq!(message("bare", b"a\0b\0"), Err("`FILE` is not UTF-8 text but UTF-16, or no text at all".into()));
         assert_eq!(
             message("latin", b"ok\n25 \xb0C"),
-            Err("FILE is not UTF-8 text: line 2 holds a byte of another encoding".into())
+            Err("`FILE` is not UTF-8 text: line 2 holds a byte of another encoding".into())
         );
-        assert_eq!(message("huge", &vec![b'a'; (1 << 20) + 1]), Err("FILE is larger than 1 MiB".into()));
-        assert!(read(folder.path(), 1).unwrap_err().message.ends_with("is a folder, not a file"));
-        assert!(read(&folder.path().join("a\\b"), 1).unwrap_err().help.unwrap().contains("backslash"));
+        assert_eq!(message("huge", &vec![b'a'; (1 << 20) + 1]), Err("`FILE` is larger than 1 MiB".into()));
+        assert!(read(folder.path(), ".", 1).unwrap_err().message.ends_with("is a folder, not a file"));
+        assert!(read(&folder.path().join("a\\b"), "a\\b", 1).unwrap_err().help.unwrap().contains("backslash"));
     }
 }

@@ -6,7 +6,7 @@
 
 use super::keys::{self, Key, Standing, Table};
 use super::raw::{Located, Quantity};
-use crate::faults::{Fault, Faults, Span, nearest, quoted};
+use crate::faults::{Fault, Faults, Span, quoted};
 use crate::units::{self, Kind};
 use toml::de::{DeTable, DeValue};
 
@@ -89,29 +89,29 @@ pub(super) fn parse(source: usize, text: &str, faults: &mut Faults) -> Node {
     for error in errors {
         let span = Span::new(source, error.span().unwrap_or(0..0));
         let message = error.message().trim().replace('\n', ", ");
-        let mut fault = Fault::error(span, format!("not TOML: {message}"));
         let line_start = text.get(..span.start).and_then(|before| before.rfind('\n')).map_or(0, |at| at + 1);
         let line = text.get(line_start..).unwrap_or("").lines().next().unwrap_or("");
-        if line.contains('\\') {
-            fault =
-                fault.help("in double quotes a backslash starts an escape: write paths with `/`, or in single quotes");
-        } else if line.contains(['\u{201c}', '\u{201d}', '\u{2018}', '\u{2019}']) {
-            fault = fault.help("these are typographic quotes: write the plain `\"`");
+        let mut fault = Fault::error(span, format!("not TOML: {message}"));
+        if line.contains(['\u{201c}', '\u{201d}', '\u{2018}', '\u{2019}']) {
+            fault = fault.label("typographic quotes").help("write the plain `\"`");
+        } else if line.contains('\\') {
+            fault = fault
+                .label("a backslash starts an escape in double quotes")
+                .help("write paths with `/`, or in single quotes");
         } else if message.contains("duplicate key") {
             fault = fault
-                .help("keep one of the two; several layers, heaters, events... each stand under [[double brackets]]");
-        } else if line.split_once('=').is_some_and(|(_, value)| starts_like_a_bare_quantity(value)) {
-            fault = fault.help("quantities stand in double quotes: key = \"50 mm\"");
+                .label("said before")
+                .help("keep one of the two; several layers, heaters or events each stand under [[double brackets]]");
+        } else if message.contains("must be quoted") {
+            let quoted = line.split('#').next().and_then(|line| line.split_once('='));
+            fault.message = "text and quantities stand in double quotes".into();
+            fault = fault
+                .label("without quotes")
+                .help_if(quoted.map(|(key, value)| format!("write {} = \"{}\"", key.trim(), value.trim())));
         }
         faults.push(fault);
     }
     Node { span: Span::new(source, 0..0), value: Value::Table(entries(source, table.get_ref())) }
-}
-
-fn starts_like_a_bare_quantity(value: &str) -> bool {
-    let value = value.trim();
-    value.starts_with(|c: char| c.is_ascii_alphanumeric() || c == '-' || c == '+')
-        && value.contains(|c: char| c.is_alphabetic() || c == '%')
 }
 
 /// Reads the value of an override that `faults` already holds, at `offset` of that text: TOML if it is TOML, else text.
@@ -168,8 +168,8 @@ impl<'a> Fields<'a> {
                         format!("{} in {} is not yet modelled", quoted(&entry.key), table.title),
                     )
                     .label("not yet modelled")
-                    .note(format!("it is meant for {about}; it is refused because ignoring it would change the answer"))
-                    .help("take it out, or state what it stands for by the keys that are modelled"),
+                    .note(format!("meant for {about}; refused, for an answer that ignored it would be wrong"))
+                    .help("take it out, or say what it stands for by keys that are modelled"),
                 ),
                 None => faults.push(unknown_key(entry, table)),
             }
@@ -182,9 +182,17 @@ impl<'a> Fields<'a> {
         self.entries.iter().find(|entry| entry.key == key)
     }
 
-    /// Whether a key stands here, modelled or not.
-    pub fn has(&self, key: &str) -> bool {
-        self.entries.iter().any(|entry| entry.key == key)
+    /// Whether any of these keys stands here, be it misspelt: what depends on it has then been told.
+    pub fn says(&self, keys: &[&str]) -> bool {
+        self.entries.iter().any(|entry| {
+            let known = self.table.find(&entry.key).map(|key| key.name);
+            known.or_else(|| self.table.nearest(&entry.key)).is_some_and(|name| keys.contains(&name))
+        })
+    }
+
+    /// Whether a key of later work stands here: what it stands for is then not missing.
+    pub fn has_later(&self) -> bool {
+        self.entries.iter().any(|entry| self.table.find(&entry.key).is_some_and(|key| !key.is_modelled()))
     }
 
     /// The value of a key.
@@ -204,6 +212,9 @@ impl<'a> Fields<'a> {
 
     /// Reports a key that must stand here.
     pub fn missing(&self, key: &str, faults: &mut Faults) {
+        if self.says(&[key]) {
+            return;
+        }
         let about = self.table.find(key).map_or("", |key| key.about);
         faults.push(
             Fault::error(self.span, format!("{} needs `{key}`: {about}", self.table.title))
@@ -284,7 +295,7 @@ fn unknown_key(entry: &Entry, table: &Table) -> Fault {
     let mut fault = Fault::error(entry.key_span, format!("{} has no key {}", table.title, quoted(&entry.key)))
         .label("unknown key")
         .note(format!("its keys: {}", table.modelled()));
-    if let Some(near) = nearest(&entry.key, table.keys.iter().map(|key| key.name)) {
+    if let Some(near) = table.nearest(&entry.key) {
         fault = fault.help(format!("did you mean `{near}`?"));
     } else if let Some(home) = keys::home_of(&entry.key) {
         fault = fault.help(format!("`{}` belongs in {home}", entry.key));
@@ -354,7 +365,7 @@ pub(super) fn tolerance_of(node: &Node, kind: Kind, value_si: f64, faults: &mut 
 }
 
 fn plain_quantity(node: &Node, kinds: &[Kind], faults: &mut Faults) -> Option<(Kind, f64)> {
-    let names = || kinds.iter().map(|kind| kind.name()).collect::<Vec<_>>().join(" or ");
+    let name = Kind::name_of_any(kinds);
     let (kind, value) = match &node.value {
         Value::Number(number) if kinds.contains(&Kind::Number) => (Kind::Number, *number),
         Value::Text(text) => match units::parse_any(kinds, text) {
@@ -379,7 +390,7 @@ fn plain_quantity(node: &Node, kinds: &[Kind], faults: &mut Faults) -> Option<(K
         Value::Number(_) => {
             let example = kinds.first().map_or("", |kind| kind.example());
             faults.push(
-                Fault::error(node.span, format!("{} needs its unit", names()))
+                Fault::error(node.span, format!("a {name} needs its unit"))
                     .label("a number without its unit")
                     .note(format!(
                         "accepted: {}",
@@ -392,7 +403,7 @@ fn plain_quantity(node: &Node, kinds: &[Kind], faults: &mut Faults) -> Option<(K
         _ => {
             let example = kinds.first().map_or("", |kind| kind.example());
             faults.push(
-                Fault::error(node.span, format!("{} is wanted here, not {}", names(), node.what()))
+                Fault::error(node.span, format!("a {name} is wanted here, not {}", node.what()))
                     .label("no quantity")
                     .help(format!("write it in double quotes, as in \"{example}\"")),
             );
@@ -406,12 +417,16 @@ fn plain_quantity(node: &Node, kinds: &[Kind], faults: &mut Faults) -> Option<(K
     }
     let told = faults.text_of(node.span).trim_matches(['"', '\'']).to_owned();
     if kind != Kind::Number && value < low && low == 0.0 {
-        faults.push(Fault::error(node.span, format!("{} cannot be negative", kind.name())).label("negative"));
+        faults.push(Fault::error(node.span, format!("a {} cannot be negative", kind.name())).label("negative"));
+        return None;
+    }
+    if kind == Kind::Share && value > high {
+        faults.push(Fault::error(node.span, "a share lies between 0 and 100 %").label("out of range"));
         return None;
     }
     if !(low..=high).contains(&value) {
         faults.push(
-            Fault::error(node.span, format!("{} of {} is out of any physical range", kind.name(), quoted(&told)))
+            Fault::error(node.span, format!("a {} of {} is out of any physical range", kind.name(), quoted(&told)))
                 .label("out of range")
                 .help("check the unit and the decimal point"),
         );

@@ -97,20 +97,20 @@ impl Materials {
 fn own_material(raw: &raw::Material, faults: &mut Faults) -> Option<Arc<Material>> {
     let rows = |property: &Property| property.rows.iter().map(|&(at, value)| (at.unwrap_or(ANY_K), value)).collect();
     if let Some(freezes_at) = raw.freezes_at {
-        let absent: Vec<_> = [("conductivity", &raw.solid_conductivity), ("specific_heat", &raw.solid_specific_heat)]
-            .into_iter()
-            .filter(|(_, property)| property.is_none())
-            .map(|(key, _)| format!("`{key}`"))
-            .collect();
-        let solid = raw.solid.unwrap_or(freezes_at.span);
-        if !absent.is_empty() && !faults.has_errors() {
+        let lacks = match (&raw.solid_conductivity, &raw.solid_specific_heat) {
+            (None, None) => Some("conductivity and specific heat are"),
+            (None, Some(_)) => Some("conductivity is"),
+            (Some(_), None) => Some("specific heat is"),
+            (Some(_), Some(_)) => None,
+        };
+        if let Some(lacks) = lacks.filter(|_| !faults.has_errors()) {
             faults.push(
                 Fault::warning(
-                    solid,
-                    format!("the solid's {} is not stated: the liquid's is taken", absent.join(" and ")),
+                    raw.solid.unwrap_or(freezes_at.span),
+                    format!("the solid's {lacks} not stated: the liquid's figures are taken"),
                 )
-                .label("freezes, with no figures of its own for the solid")
-                .help("add them under [material.solid]"),
+                .label("freezes into what?")
+                .help("add `solid = { conductivity = ..., specific_heat = ... }`, or [material.solid]"),
             );
         }
     }

@@ -4,7 +4,7 @@
 //! that both share. Whatever is stated beyond that must agree.
 
 use crate::case::raw::{Case, Layer, Quantity};
-use crate::faults::{Fault, Faults, Span, quoted};
+use crate::faults::{Fault, Faults, Span};
 use crate::library;
 
 /// Sizes that differ by less agree [m]: what printed tables of pipes round to.
@@ -78,12 +78,16 @@ pub(super) fn radii(case: &Case, faults: &mut Faults) -> Vec<Option<(f64, f64)>>
         if let Some(within) = inner
             && (within.value_m - inside.value_m).abs() > ROUNDING_M
         {
-            let what = if inside.value_m > within.value_m { "a gap to" } else { "an overlap with" };
+            let gap_m = (inside.value_m - within.value_m) / 2.0;
+            let what = if gap_m > 0.0 { "leaves a gap to" } else { "overlaps" };
             faults.push(
-                Fault::error(inside.span, format!("{what} the layer inside: layers lie on one another"))
-                    .label(format!("makes the inside diameter {}", millimetres(inside.value_m)))
-                    .also(within.span, format!("makes the outside diameter {}", millimetres(within.value_m)))
-                    .help("an air gap is entered as a layer of its own, or as the contact of this one"),
+                Fault::error(
+                    inside.span,
+                    format!("the layer {what} the one inside it, by {}", millimetres(gap_m.abs())),
+                )
+                .label(format!("makes the inside diameter {}", millimetres(inside.value_m)))
+                .also(within.span, format!("makes the outside diameter {}", millimetres(within.value_m)))
+                .help("layers lie on one another; an air gap is a layer of its own, or the contact of this one"),
             );
         }
         if (outside.value_m - inside.value_m - 2.0 * wall.value_m).abs() > ROUNDING_M {
@@ -152,10 +156,7 @@ fn stated(layer: &Layer, faults: &mut Faults) -> Sizes {
             faults.push(
                 Fault::error(own.span, format!("the pipe size and the {what} contradict each other"))
                     .label(format!("{} here", millimetres(own.value_m)))
-                    .also(
-                        designation.span,
-                        format!("{} has a {what} of {}", quoted(&pipe.designation), millimetres(of_pipe)),
-                    )
+                    .also(designation.span, format!("{what} {} by the pipe size", millimetres(of_pipe)))
                     .help("take out one of the two"),
             );
         }
