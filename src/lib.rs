@@ -4,5 +4,6 @@ pub mod answer;
 pub mod history;
 pub mod march;
 pub mod material;
+pub mod report;
 pub mod section;
 pub mod series;
