@@ -28,7 +28,7 @@ const SMALL: f64 = 44.0;
 const MARGIN: f64 = 60.0;
 const TICK_ROOM: f64 = 150.0;
 const ROW: f64 = 62.0;
-const PANEL_GAP: f64 = 130.0;
+const PANEL_GAP: f64 = 150.0;
 const PANEL_UNIT: f64 = 330.0;
 const LINE: f64 = 7.0;
 
@@ -113,11 +113,12 @@ impl<'f> Layout<'f> {
         let labels = figure.panels.iter().flat_map(|panel| panel.curves.iter().flat_map(|curve| &curve.names));
         let widest = labels.map(|name| canvas::width(name, TEXT, Weight::Regular)).fold(0.0, f64::max);
         let left = MARGIN + TICK_ROOM;
-        let right = f64::from(WIDTH) - MARGIN - (widest + 130.0).min(0.34 * f64::from(WIDTH));
+        let right = f64::from(WIDTH)
+            - MARGIN
+            - (widest + if figure.listed { 200.0 } else { 130.0 }).min(0.34 * f64::from(WIDTH));
         let mut layout = Layout { height: 0, left, right, panels: Vec::new(), tags: Vec::new() };
         layout.tags = layout.tags(figure);
-        let rows = layout.tags.iter().map(|tag| tag.row + 1).max().unwrap_or(0);
-        let mut top = MARGIN + TITLE + 1.5 * TEXT + 1.6 * TEXT + rows as f64 * ROW + 20.0;
+        let mut top = MARGIN + TITLE + 3.9 * TEXT + layout.tag_rows() as f64 * ROW;
         for panel in &figure.panels {
             let bottom = top + PANEL_UNIT * panel.height;
             layout.panels.push((top, bottom));
@@ -126,6 +127,10 @@ impl<'f> Layout<'f> {
         let even = |length: f64| 2 * (length / 2.0).ceil() as u32;
         layout.height = even(top - PANEL_GAP + 2.6 * TEXT + MARGIN + 40.0);
         layout
+    }
+
+    fn tag_rows(&self) -> usize {
+        self.tags.iter().map(|tag| tag.row + 1).max().unwrap_or(0)
     }
 
     fn x(&self, figure: &Figure, value: f64) -> f64 {
@@ -179,7 +184,7 @@ fn draw<DB: DrawingBackend>(figure: &Figure, area: &DrawingArea<DB, Shift>, text
     for (panel, &(top, bottom)) in figure.panels.iter().zip(&layout.panels) {
         draw_grid(figure, panel, &layout, (top, bottom), &canvas)?;
     }
-    draw_tags(&layout, (top, bottom), &canvas)?;
+    draw_tags(figure, &layout, &canvas)?;
     for (panel, &(top, bottom)) in figure.panels.iter().zip(&layout.panels) {
         draw_panel(figure, panel, &layout, (top, bottom), &canvas)?;
     }
@@ -191,13 +196,20 @@ fn draw<DB: DrawingBackend>(figure: &Figure, area: &DrawingArea<DB, Shift>, text
     canvas.text(&figure.axis.label, (middle, bottom + 2.4 * TEXT), TEXT, Weight::Regular, palette::INK, Align::Centre)
 }
 
-fn draw_tags<DB: DrawingBackend>(layout: &Layout, (top, bottom): (f64, f64), canvas: &Canvas<DB>) -> Drawn<DB> {
-    let base = top - 1.6 * TEXT - 0.5 * ROW;
+fn draw_tags<DB: DrawingBackend>(figure: &Figure, layout: &Layout, canvas: &Canvas<DB>) -> Drawn<DB> {
+    let top = layout.panels[0].0;
+    let base = top - 0.62 * ROW;
     for tag in &layout.tags {
         let y = base - tag.row as f64 * ROW;
-        let (width, dash, down_to) = if tag.centred { (2.5, Dash::Solid, top) } else { (4.0, Dash::Solid, bottom) };
-        let from = if tag.centred { y + 0.6 * SMALL } else { y - 0.5 * SMALL };
-        canvas.line(&[(tag.at, from), (tag.at, down_to)], Look::line(palette::GREY, dash, 1.0), width)?;
+        let from = y + if tag.centred { 0.6 } else { -0.5 } * SMALL;
+        canvas.line(&[(tag.at, from), (tag.at, top)], Look::line(palette::GREY, Dash::Solid, 1.0), 2.5)?;
+        if !tag.centred {
+            // Over a band the line would hide the jump that it names.
+            let look = Look::line(palette::GREY, if figure.bands.is_empty() { Dash::Short } else { Dash::Dotted }, 1.0);
+            for &(top, bottom) in &layout.panels {
+                canvas.line(&[(tag.at, top), (tag.at, bottom)], look, 3.5)?;
+            }
+        }
         canvas.text(tag.label, (tag.left, y), SMALL, Weight::Regular, palette::INK, Align::Left)?;
     }
     Ok(())
@@ -210,6 +222,9 @@ fn draw_grid<DB: DrawingBackend>(
     (top, bottom): (f64, f64),
     canvas: &Canvas<DB>,
 ) -> Drawn<DB> {
+    // Tags stand between the uppermost panel and its axis's name.
+    let tag_rows = if top == layout.panels[0].0 { layout.tag_rows() } else { 0 };
+    let label_y = top - 1.35 * TEXT - tag_rows as f64 * ROW;
     const GRID: Look = Look::line((0xD9, 0xD9, 0xD9), Dash::Solid, 1.0);
     const FRAME: Look = Look::line(palette::GREY, Dash::Solid, 1.0);
     let y = |value: f64| bottom - panel.axis.share(value) * (bottom - top);
@@ -228,7 +243,7 @@ fn draw_grid<DB: DrawingBackend>(
     }
     let corners = [(layout.left, top), (layout.left, bottom), (layout.right, bottom)];
     canvas.line(&corners, FRAME, 4.0)?;
-    let label = (layout.left - TICK_ROOM + 30.0, top - 0.95 * TEXT);
+    let label = (layout.left - TICK_ROOM + 30.0, label_y);
     canvas.text(&panel.axis.label, label, TEXT, Weight::SemiBold, palette::INK, Align::Left)
 }
 
@@ -292,7 +307,11 @@ fn draw_panel<DB: DrawingBackend>(
         let place = placer.along(y(level.value), size);
         canvas.label(&level.label, place, SMALL, Weight::Regular, palette::INK)?;
     }
-    draw_line_ends(panel, &paths, layout, (top, bottom), canvas)
+    if figure.listed {
+        draw_list(panel, layout, top, canvas)
+    } else {
+        draw_line_ends(panel, &paths, layout, (top, bottom), canvas)
+    }
 }
 
 /// Names at the right ends of the curves, each with a piece of its curve's line, moved apart where they would touch.
@@ -319,6 +338,18 @@ fn draw_line_ends<DB: DrawingBackend>(
         let room = f64::from(WIDTH) - 0.4 * MARGIN - right - 122.0;
         let name = canvas::shortened(name, TEXT, Weight::Regular, room);
         canvas.text(&name, (right + 122.0, place), TEXT, Weight::Regular, palette::INK, Align::Left)?;
+    }
+    Ok(())
+}
+
+/// Names of the curves in their own order, each with a piece of its line.
+fn draw_list<DB: DrawingBackend>(panel: &Panel, layout: &Layout, top: f64, canvas: &Canvas<DB>) -> Drawn<DB> {
+    let named = panel.curves.iter().flat_map(|curve| curve.names.iter().map(move |name| (name, curve.look)));
+    for (index, (name, look)) in named.enumerate() {
+        let y = top + (0.6 + 1.3 * index as f64) * TEXT;
+        let from = layout.right + 40.0;
+        canvas.line(&[(from, y), (from + 130.0, y)], look, LINE * look.width)?;
+        canvas.text(name, (from + 156.0, y), TEXT, Weight::Regular, palette::INK, Align::Left)?;
     }
     Ok(())
 }
@@ -360,11 +391,6 @@ fn thinned(points: impl Iterator<Item = (f64, f64)>) -> Vec<(f64, f64)> {
     }
     close(&mut column, &mut path);
     path
-}
-
-/// The tint that a colour gives on white.
-pub(crate) fn hex(colour: Colour) -> String {
-    format!("#{:02X}{:02X}{:02X}", colour.0, colour.1, colour.2)
 }
 
 #[cfg(test)]

@@ -164,6 +164,8 @@ pub struct Figure {
     pub uprights: Vec<Upright>,
     /// Layers behind all panels.
     pub bands: Vec<Band>,
+    /// Whether the curves' names make a list in the order of the curves, as where their ends lie too close to name them there.
+    pub listed: bool,
 }
 
 /// The figures that the findings can fill, in the order in which they are read: histories need at least two recorded times.

@@ -6,9 +6,9 @@ use crate::report::font;
 use plotters::coord::Shift;
 use plotters::drawing::DrawingArea;
 use plotters::element::{Circle, PathElement, Polygon, Rectangle};
-use plotters::prelude::{Color, DrawingBackend, IntoFont, RGBColor, ShapeStyle, TextStyle, WHITE};
+use plotters::prelude::{Color, DrawingBackend, RGBColor, ShapeStyle, TextStyle, WHITE};
 use plotters::style::text_anchor::{HPos, Pos, VPos};
-use plotters::style::{FontDesc, FontStyle};
+use plotters::style::{FontDesc, FontFamily, FontStyle};
 
 /// Weight of a text.
 #[derive(Clone, Copy, PartialEq)]
@@ -33,7 +33,7 @@ pub struct Canvas<'a, DB: DrawingBackend> {
 fn font_of(size: f64, weight: Weight) -> FontDesc<'static> {
     font::register();
     let style = if weight == Weight::SemiBold { FontStyle::Bold } else { FontStyle::Normal };
-    (font::FAMILY, size).into_font().style(style)
+    FontDesc::new(FontFamily::Name(font::FAMILY), size, style)
 }
 
 /// Width of a text, from the bundled font's own measures, whatever the backend.

@@ -133,13 +133,13 @@ impl Placer {
         self.take(places.into_iter())
     }
 
-    /// A place for the name of a level, just above or below it.
+    /// A place for the name of a level, just above or below it, as far to the right as is clear.
     pub fn along(&mut self, level: f64, size: (f64, f64)) -> Box2 {
         let span = self.frame.right - self.frame.left - size.0 - 48.0;
         let left = self.frame.left + 24.0;
         let places: Vec<Box2> = (0..=40)
             .flat_map(|step| {
-                let left = left + span.max(0.0) * f64::from(step) / 40.0;
+                let left = left + span.max(0.0) * f64::from(40 - step) / 40.0;
                 [level - size.1 - ENOUGH, level + ENOUGH].map(|top| Box2::at(left, top, size))
             })
             .collect();

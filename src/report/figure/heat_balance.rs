@@ -22,9 +22,9 @@ pub fn heat_balance(findings: &Findings) -> Figure {
     }
     add("stored", Look::line(palette::BLUE, Dash::Long, 1.2), stored(&times, &heaters, findings));
     let lost = times.iter().copied().zip(history.lost_w_per_m.iter().copied()).collect();
-    add("lost to the outside", Look::line(palette::VERMILION, Dash::Solid, 1.2), lost);
+    add("lost to the outside", Look::line(palette::VERMILION, Dash::DashDot, 1.2), lost);
     if !findings.section.heaters.is_empty() {
-        let look = Look { filled: true, ..Look::line(palette::ORANGE, Dash::DashDot, 1.2) };
+        let look = Look { filled: true, ..Look::line(palette::ORANGE, Dash::Solid, 1.0) };
         add("heaters", look, stepped(times.iter().copied().zip(heaters.iter().copied())));
     }
 
@@ -45,6 +45,7 @@ pub fn heat_balance(findings: &Findings) -> Figure {
         axis,
         panels: vec![panel],
         bands: Vec::new(),
+        listed: false,
     }
 }
 

@@ -34,11 +34,11 @@ pub fn histories(findings: &Findings) -> Figure {
         axis,
         panels,
         bands: Vec::new(),
+        listed: false,
     }
 }
 
 fn temperatures(findings: &Findings, times: &[f64], unit_s: f64) -> Panel {
-    let section = &findings.section;
     let levels: Vec<Level> = temperature_levels(findings);
     let dots = dots(findings, unit_s, false);
     let traces = told_apart(traces(findings));
@@ -58,7 +58,6 @@ fn temperatures(findings: &Findings, times: &[f64], unit_s: f64) -> Panel {
     let near = |value: &f64| *value > low - 0.6 * span && *value < high + 0.6 * span;
     let levels: Vec<Level> = levels.into_iter().filter(|level| near(&level.value)).collect();
     let axis = Axis::around("Temperature [°C]", values.chain(levels.iter().map(|level| level.value)), 9);
-    let _ = section;
     Panel { axis, height: 4.0, curves, levels, dots }
 }
 

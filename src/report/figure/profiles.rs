@@ -8,7 +8,7 @@ use crate::report::text::{clean, degc, fixed};
 use ndarray::Array1;
 
 /// As many profiles as can be told apart.
-const MOST_PROFILES: usize = 7;
+const MOST_PROFILES: usize = 6;
 
 /// Profiles that differ by less than this share of the range are told apart no more.
 const TOLD_APART: f64 = 0.03;
@@ -16,8 +16,11 @@ const TOLD_APART: f64 = 0.03;
 /// From the first to the last profile: growing darker all the way, so that a grey print keeps the order.
 const RAMP: [Colour; 4] = [(0xE6, 0x9F, 0x00), (0xD5, 0x5E, 0x00), (0x8E, 0x2D, 0x6B), (0x1C, 0x24, 0x54)];
 
+/// Neighbours differ in their dashes as well.
+const DASHES: [Dash; 3] = [Dash::Solid, Dash::Long, Dash::DashDot];
+
 const CONTENT_TINT: Colour = (0xE4, 0xEF, 0xF8);
-const LAYER_TINTS: [Colour; 2] = [(0xF6, 0xF3, 0xEC), (0xE7, 0xE5, 0xE0)];
+const LAYER_TINTS: [Colour; 2] = [(0xE6, 0xE3, 0xDD), (0xF7, 0xF4, 0xEE)];
 
 /// Radial profiles at the start and at the round times that differ most; the last record where none is near.
 pub fn profiles(findings: &Findings) -> Figure {
@@ -39,7 +42,7 @@ pub fn profiles(findings: &Findings) -> Figure {
             };
             Curve {
                 names: vec![name],
-                look: Look::line(colour, Dash::Solid, 1.0),
+                look: Look::line(colour, DASHES[index % DASHES.len()], 1.1),
                 points: radii_mm.iter().copied().zip(profile.iter().map(|&kelvin| degc(kelvin))).collect(),
             }
         })
@@ -51,7 +54,7 @@ pub fn profiles(findings: &Findings) -> Figure {
     let panel = Panel {
         axis: Axis::around("Temperature [°C]", values, 9),
         height: 4.0,
-        curves: curves.clone(),
+        curves,
         levels: Vec::new(),
         dots: Vec::new(),
     };
@@ -63,6 +66,7 @@ pub fn profiles(findings: &Findings) -> Figure {
         panels: vec![panel],
         uprights: contacts(findings),
         bands: bands(findings, from_mm),
+        listed: true,
     }
 }
 
