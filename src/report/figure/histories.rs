@@ -250,6 +250,6 @@ fn heaters(findings: &Findings, times: &[f64]) -> Option<Panel> {
         })
         .collect();
     let highest = range(history.heaters_w_per_m.iter().copied()).map_or(1.0, |(_, high)| high);
-    let axis = Axis::new("Heater output [W/m]", 0.0, 1.12 * highest, 3);
+    let axis = Axis::new("Heater output [W/m]", 0.0, 1.12 * highest, 4);
     Some(Panel { axis, height: 1.0, curves, levels: Vec::new(), dots: Vec::new() })
 }
