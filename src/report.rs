@@ -190,3 +190,18 @@ pub(crate) fn duration_words(time_s: f64, danger: bool) -> String {
     let (hours, minutes) = ((minutes / 60.0).floor(), minutes % 60.0);
     if hours == 0.0 { format!("{minutes} min") } else { format!("{hours} h {minutes} min") }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn faults_of_the_disk_are_told_apart() {
+        let told = |kind: ErrorKind| ReportError::from_io(Path::new("out"), io::Error::from(kind));
+        assert!(matches!(told(ErrorKind::StorageFull), ReportError::Full { .. }));
+        assert!(matches!(told(ErrorKind::PermissionDenied), ReportError::NotAllowed { .. }));
+        assert!(matches!(told(ErrorKind::ReadOnlyFilesystem), ReportError::NotAllowed { .. }));
+        assert!(matches!(told(ErrorKind::NotADirectory), ReportError::NotAFolder { .. }));
+        assert!(matches!(told(ErrorKind::Interrupted), ReportError::System { .. }));
+    }
+}

@@ -4,6 +4,7 @@ use super::figure::palette;
 use super::text::{clean, figures, fixed};
 use crate::section::{Face, Seat, Section, Side};
 use maud::{Markup, html};
+use std::f64::consts::PI;
 
 const WIDTH: f64 = 900.0;
 const HEIGHT: f64 = 470.0;
@@ -156,7 +157,11 @@ fn names(section: &Section, scale: f64) -> Vec<Name> {
         .enumerate()
         .map(|(index, (radius_m, head, detail, swatch))| {
             let share = if count > 1 { index as f64 / (count - 1) as f64 } else { 0.5 };
-            let angle = (-52.0 + 72.0 * share).to_radians();
+            let mut angle = (-52.0 + 72.0 * share).to_radians();
+            if matches!(swatch, Swatch::Heater) {
+                let spacing = 2.0 * PI / f64::from(dots(radius_m * scale));
+                angle = (angle / spacing).round() * spacing;
+            }
             let at = (CENTRE.0 + radius_m * scale * angle.cos(), CENTRE.1 + radius_m * scale * angle.sin());
             Name { at, head, detail, swatch }
         })
@@ -187,14 +192,19 @@ pub(crate) fn seat_words(section: &Section, seat: Seat) -> String {
     }
 }
 
+/// Number of dots that mark a heater on a radius of the page.
+fn dots(radius: f64) -> u32 {
+    (2.0 * PI * radius / 26.0).clamp(8.0, 48.0).floor() as u32
+}
+
 /// Dots around the heater's face, or over the ring that it heats.
 fn heater_mark(section: &Section, seat: Seat, scale: f64) -> Markup {
     let radius = seat_radius_m(section, seat) * scale;
-    let count = (2.0 * std::f64::consts::PI * radius / 26.0).clamp(8.0, 48.0).floor() as u32;
+    let count = dots(radius);
     html! {
         g fill=(orange()) stroke="#262626" stroke-width="0.9" {
             @for index in 0..count {
-                @let angle = 2.0 * std::f64::consts::PI * f64::from(index) / f64::from(count);
+                @let angle = f64::from(index) * 2.0 * PI / f64::from(count);
                 circle cx=(px(CENTRE.0 + radius * angle.cos())) cy=(px(CENTRE.1 + radius * angle.sin())) r="3.6" {}
             }
         }

@@ -3,7 +3,7 @@
 use super::cross_section::{cross_section, seat_words};
 use super::drawing::{DrawingError, svg};
 use super::figure::{self, Figure};
-use super::text::{clean, degc, figures, fixed};
+use super::text::{aligned, clean, degc, figures, fixed};
 use super::{duration_words, font};
 use crate::answer::{Answer, Findings, Outcome};
 use crate::material::Material;
@@ -231,9 +231,9 @@ fn line_as_solved(findings: &Findings) -> Markup {
         section.together {
             h2 { "The line as solved" }
             (cross_section(section))
-            (section_facts(section))
         }
         section {
+            (section_facts(section))
             h3 { "Layers, from the inside outwards" }
             (layer_table(section))
             h3 { "Materials" }
@@ -453,8 +453,9 @@ fn heater_table(section: &Section) -> Markup {
 
 fn start_state(findings: &Findings) -> Markup {
     let start = &findings.start;
-    let temperature = |kelvin: f64| format!("{} °C", fixed(degc(kelvin), 2));
+    let temperature = |kelvin: f64| format!("{} °C", aligned(degc(kelvin), 2));
     html! {
+        div.pair {
         table.narrow {
             thead { tr { th { "Place" } th.number { "Temperature" } } }
             tbody {
@@ -472,6 +473,7 @@ fn start_state(findings: &Findings) -> Markup {
                 }
                 @if start.frozen_share > 0.0 { tr { th scope="row" { "frozen share of the content" } td.number { (figures(100.0 * start.frozen_share, 3)) " %" } } }
             }
+        }
         }
     }
 }

@@ -52,17 +52,24 @@ pub fn figures(value: f64, significant: usize) -> String {
 
 /// A number for people with at most so many decimals, no trailing zeros, a real minus sign.
 pub fn fixed(value: f64, decimals: usize) -> String {
-    if !value.is_finite() {
-        return "–".into();
-    }
-    let mut text = format!("{value:.decimals$}");
+    let mut text = aligned(value, decimals);
     if text.contains('.') {
         text.truncate(text.trim_end_matches('0').trim_end_matches('.').len());
     }
-    if text == "-0" {
-        text = "0".into();
+    text
+}
+
+/// A number for a column: just so many decimals, a real minus sign, and none before a zero.
+pub fn aligned(value: f64, decimals: usize) -> String {
+    if !value.is_finite() {
+        return "–".into();
     }
-    text.replace('-', "\u{2212}")
+    let text = format!("{value:.decimals$}");
+    match text.strip_prefix('-') {
+        Some(digits) if digits.chars().all(|digit| matches!(digit, '0' | '.')) => digits.into(),
+        Some(digits) => format!("\u{2212}{digits}"),
+        None => text,
+    }
 }
 
 #[cfg(test)]
@@ -100,5 +107,7 @@ mod tests {
         assert_eq!(figures(0.012345, 3), "0.0123");
         assert_eq!(figures(-25.0, 3), "\u{2212}25");
         assert_eq!(fixed(-0.001, 1), "0");
+        assert_eq!(aligned(-0.001, 2), "0.00");
+        assert_eq!(aligned(-24.1, 2), "\u{2212}24.10");
     }
 }

@@ -269,8 +269,8 @@ pub fn outage(supply_back_s: Option<f64>) -> Findings {
         verb: "outage",
         input_digest: "3f0c9a1d5b7e2468ace013579bdf02468ace13579bdf02468ace13579bdf0246".into(),
         headline: vec![
-            "First ice 4 h 15 min after the supply is lost; all frozen after 2 d 13 h.".into(),
-            "Power must be back within 3 h 26 min to keep the line clear of ice on the cautious view.".into(),
+            "First ice 4 h 0 min after the supply is lost; all frozen after 59 h 30 min.".into(),
+            "To keep the line clear of ice on the cautious view, power must be back within 3 h 14 min.".into(),
         ],
         answers: vec![
             answer("low alarm", when(&states, |state| state.content_c <= 2.0), 2.0, "degC", "wall outside"),
@@ -310,4 +310,110 @@ pub fn outage(supply_back_s: Option<f64>) -> Findings {
         answered: true,
         section,
     }
+}
+
+/// A bare heated core without a content of its own layer: one state only, as `steady` finds it.
+pub fn steady() -> Findings {
+    let mut findings = outage(None);
+    findings.verb = "steady";
+    findings.history = history(&march(f64::INFINITY)[..1]);
+    findings.marks.clear();
+    findings.section.limits.clear();
+    findings.answers = vec![Answer {
+        outcome: Outcome::Reached,
+        time_s: None,
+        error_s: None,
+        value: Some(9.67468898),
+        unit: "W/m".into(),
+        error: Some(2e-9),
+        closest_value: None,
+        closest_error: None,
+        closest_time_s: None,
+        cautious_time_s: None,
+        cautious_outcome: None,
+        danger: false,
+        ..answer("keep", None, 5.0, "W/m", "wall outside")
+    }];
+    findings.headline = vec!["9.68 W/m holds wall outside at 5 degC.".into()];
+    findings
+}
+
+/// A rod of metal, no layer round it, no phase that freezes.
+pub fn bare_core() -> Findings {
+    let mut findings = outage(None);
+    let section = &mut findings.section;
+    section.layers.clear();
+    section.heaters.clear();
+    section.probes.clear();
+    section.limits.clear();
+    section.content.material = Some(material("brass", 110.0, 8500.0, 380.0, "a made-up table for tests", true));
+    let history = &mut findings.history;
+    let rows = history.times_s.len();
+    history.faces_k = Array2::zeros((rows, 0));
+    history.heaters_w_per_m = Array2::zeros((rows, 0));
+    history.probes_k = Array2::zeros((rows, 0));
+    history.frozen_share.fill(0.0);
+    let within = 12;
+    history.profiles_k = history.profiles_k.slice(ndarray::s![.., ..within]).to_owned();
+    history.profile_radii_m = history.profile_radii_m.slice(ndarray::s![..within]).to_owned();
+    findings.start.faces.clear();
+    findings.answers.truncate(1);
+    findings
+}
+
+/// An empty line whose names try to steer terminals, pages and spreadsheets.
+pub fn hostile() -> Findings {
+    let mut findings = outage(Some(36.0 * 3600.0));
+    let evil = "=cmd|'/c'!A1 <script>alert(1)</script> \u{1b}[31m \u{202e}&\"";
+    findings.section.title = evil.into();
+    findings.section.line.tag = Some(evil.into());
+    for layer in &mut findings.section.layers {
+        layer.name = format!("{evil}{}", layer.name);
+    }
+    findings.section.heaters[0].name = evil.into();
+    findings.section.probes[0].name = format!("@{evil}");
+    for limit in &mut findings.section.limits {
+        limit.name = format!("{}{evil}", limit.name);
+    }
+    for answer in &mut findings.answers {
+        answer.name = format!("{}{evil}", answer.name);
+        answer.place = evil.into();
+    }
+    for lines in [&mut findings.headline, &mut findings.cautions, &mut findings.assumptions, &mut findings.governs] {
+        lines.push(evil.into());
+    }
+    for mark in &mut findings.marks {
+        mark.label = evil.into();
+    }
+    findings.section.content.state = ContentState::Empty;
+    findings.section.content.material = None;
+    findings.history.centre_k.fill(f64::NAN);
+    findings.history.content_mean_k.fill(f64::NAN);
+    findings.start.content_mean_k = None;
+    findings.start.centre_k = None;
+    findings
+}
+
+/// A warm-up under a thermostat that cycles: the heater switches every half hour once the line is warm.
+pub fn cycling() -> Findings {
+    let mut findings = outage(Some(0.0));
+    findings.verb = "warmup";
+    let history = &mut findings.history;
+    findings.marks = vec![];
+    for (row, &time_s) in history.times_s.iter().enumerate() {
+        let on = time_s < 8.0 * 3600.0 || (time_s / 1800.0).floor() as u64 % 2 == 0;
+        history.heaters_w_per_m[[row, 0]] = if on { 15.0 } else { 0.0 };
+        if row > 0 && history.heaters_w_per_m[[row, 0]] != history.heaters_w_per_m[[row - 1, 0]] {
+            let label = if on { "trace on" } else { "trace off" };
+            findings.marks.push(Mark { time_s, label: label.into() });
+        }
+        history.stored_w_per_m[row] = history.heaters_w_per_m[[row, 0]] - history.lost_w_per_m[row];
+    }
+    let wall_outside = Place::Face(Face { layer: 0, side: Side::Outside });
+    findings.section.limits.clear();
+    findings.section.targets = vec![Target { name: "keep".into(), place: wall_outside, at_least_k: ZERO + 10.0 }];
+    let reached = history.times_s.iter().zip(history.faces_k.column(1)).find(|(_, kelvin)| **kelvin >= ZERO + 10.0);
+    let time_s = reached.map(|(time_s, _)| *time_s);
+    findings.answers = vec![Answer { danger: false, ..answer("keep", time_s, 10.0, "degC", "wall outside") }];
+    findings
 }

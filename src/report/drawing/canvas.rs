@@ -169,11 +169,11 @@ mod tests {
 
     #[test]
     fn dashes_follow_the_path_and_leave_gaps() {
-        let path = [(0.0, 0.0), (50.0, 0.0), (50.0, 50.0)];
+        let path = [(0.0, 0.0), (45.0, 0.0), (45.0, 50.0)];
         let dashes = dashes(&path, Dash::Long, 4.0);
         assert_eq!(dashes[0], vec![(0.0, 0.0), (20.0, 0.0)]);
-        assert_eq!(dashes[1], vec![(30.0, 0.0), (50.0, 0.0)]);
-        assert_eq!(dashes[2], vec![(50.0, 10.0), (50.0, 30.0)]);
+        assert_eq!(dashes[1], vec![(30.0, 0.0), (45.0, 0.0), (45.0, 5.0)]);
+        assert_eq!(dashes[2], vec![(45.0, 15.0), (45.0, 35.0)]);
     }
 
     #[test]
