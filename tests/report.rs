@@ -249,18 +249,10 @@ fn the_heat_balance_closes_at_every_time() {
             curve.points.clone()
         };
         let (stored, heaters, lost) = (points("stored"), points("heaters"), points("lost to the outside"));
-        assert_eq!(stored.len(), heaters.len(), "both jump at the same times");
-        for (stored, heater) in stored.iter().zip(&heaters) {
-            assert_eq!(stored.0, heater.0);
-            let lost = lost.iter().find(|point| point.0 == stored.0).unwrap();
-            assert!(
-                (heater.1 - lost.1 - stored.1).abs() < 1e-9,
-                "at {}: {} {} {}",
-                stored.0,
-                heater.1,
-                lost.1,
-                stored.1
-            );
+        assert!(stored.len() == heaters.len() && stored.len() == lost.len(), "all have the same times");
+        for ((stored, heater), lost) in stored.iter().zip(&heaters).zip(&lost) {
+            let off = heater.1 - lost.1 - stored.1;
+            assert!(off.abs() < 1e-9, "off by {off} at {}", stored.0);
         }
     }
 }

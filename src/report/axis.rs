@@ -109,7 +109,7 @@ impl TimeUnit {
         Axis::with_step(format!("Time [{}]", self.sign), low, high, step)
     }
 
-    /// A round time in this unit near the one given [s], for captions.
+    /// Round times from 0 to the one given [s], for captions.
     pub fn round_times(&self, to_s: f64) -> Vec<f64> {
         let high = to_s / self.seconds;
         let mut times = vec![0.0];

@@ -1,5 +1,6 @@
 //! The cross-section drawn to scale, as SVG: rings with their names and dimensions, heaters on their faces, a scale bar.
 
+use super::drawing::canvas::{Weight, shortened};
 use super::figure::palette;
 use super::text::{clean, figures, fixed};
 use crate::section::{Face, Seat, Section, Side};
@@ -13,6 +14,8 @@ const CENTRE: (f64, f64) = (225.0, 205.0);
 const OUTERMOST: f64 = 190.0;
 /// Left edge of the names.
 const NAMES: f64 = 500.0;
+/// Room for a name.
+const ROOM: f64 = WIDTH - NAMES - 8.0;
 /// A layer is drawn at least so thick.
 const THINNEST: f64 = 2.5;
 
@@ -80,8 +83,8 @@ pub fn cross_section(section: &Section) -> Markup {
                     Swatch::Tint(tint) => rect x=(NAMES - 22.0) y=(px(y - 8.0)) width="16" height="16" fill=(tint) stroke="#555" stroke-width="0.8" {},
                     Swatch::Heater => circle cx=(NAMES - 14.0) cy=(px(y)) r="6" fill=(orange()) stroke="#262626" stroke-width="1" {},
                 }
-                text x=(NAMES + 4.0) y=(px(y - 2.0)) font-weight="bold" { (name.head) }
-                text x=(NAMES + 4.0) y=(px(y + 16.0)) font-size="13.5" fill="#4A4A4A" { (name.detail) }
+                text x=(NAMES + 4.0) y=(px(y - 2.0)) font-weight="bold" { (shortened(&name.head, 15.0, Weight::SemiBold, ROOM)) }
+                text x=(NAMES + 4.0) y=(px(y + 16.0)) font-size="13.5" fill="#4A4A4A" { (shortened(&name.detail, 13.5, Weight::Regular, ROOM)) }
             }
             // Overall diameter and scale bar.
             path d=(format!("M{0} {2} V{3} M{1} {2} V{3} M{0} {4} H{1}", CENTRE.0 - OUTERMOST, CENTRE.0 + OUTERMOST, CENTRE.1 + 40.0, base + 6.0, base))
@@ -92,7 +95,9 @@ pub fn cross_section(section: &Section) -> Markup {
             path d=(format!("M{0} {2} v8 h{1} v-8", CENTRE.0 - OUTERMOST, px(bar), base + 18.0)) stroke="#262626" stroke-width="1.6" fill="none" {}
             text x=(px(CENTRE.0 - OUTERMOST + bar + 8.0)) y=(base + 29.0) font-size="13.5" { (millimetres(bar_m)) " mm, to scale" }
             @if !thickened.is_empty() {
-                text x=(NAMES + 4.0) y=(base + 29.0) font-size="13.5" fill="#4A4A4A" { "drawn thicker than to scale: " (thickened.join(", ")) }
+                text x=(NAMES + 4.0) y=(base + 29.0) font-size="13.5" fill="#4A4A4A" {
+                    (shortened(&format!("drawn thicker than to scale: {}", thickened.join(", ")), 13.5, Weight::Regular, ROOM))
+                }
             }
         }
     }

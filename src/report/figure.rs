@@ -15,7 +15,7 @@ pub use histories::histories;
 pub use profiles::profiles;
 
 use super::axis::Axis;
-use super::text::clean;
+use super::text::label;
 use crate::answer::{Answer, Findings};
 use crate::report::axis::TimeUnit;
 use crate::section::{Condition, Section};
@@ -207,8 +207,8 @@ fn uprights(findings: &Findings, unit: TimeUnit, axis: &Axis) -> Vec<Upright> {
             continue;
         }
         match uprights.iter_mut().find(|upright| (upright.at - at).abs() < 1e-3 * (axis.high - axis.low)) {
-            Some(upright) => upright.label = format!("{}, {}", upright.label, clean(&mark.label)),
-            None => uprights.push(Upright { at, label: clean(&mark.label) }),
+            Some(upright) => upright.label = format!("{}, {}", upright.label, label(&mark.label)),
+            None => uprights.push(Upright { at, label: label(&mark.label) }),
         }
     }
     uprights.sort_by(|one, other| one.at.total_cmp(&other.at));
@@ -220,6 +220,12 @@ fn condition_of(section: &Section, answer: &Answer) -> Option<Condition> {
     let limit = section.limits.iter().find(|limit| limit.name == answer.name).map(|limit| limit.condition);
     let target = section.targets.iter().find(|target| target.name == answer.name);
     limit.or(target.map(|target| Condition::Above(target.place, target.at_least_k)))
+}
+
+/// Records at which a quantity differs from the record before.
+fn switchings(values: impl IntoIterator<Item = f64>) -> Vec<usize> {
+    let values: Vec<f64> = values.into_iter().collect();
+    (1..values.len()).filter(|&row| values[row] != values[row - 1]).collect()
 }
 
 /// Doubles the points of a quantity that holds its value until the next record and then jumps.

@@ -123,13 +123,13 @@ fn answer_table(answers: &[Answer]) -> Markup {
                     tr {
                         th scope="row" { (clean(&answer.name)) }
                         td { (clean(&answer.place)) }
-                        td { (quantity(answer.limit_value, &answer.unit)) }
+                        td.tight { (quantity(answer.limit_value, &answer.unit)) }
                         @if timed {
                             td.key { (when(answer)) }
                             td.number { @if let Some(time_s) = answer.time_s { (hours(time_s, answer.danger)) } }
                         }
                         @if valued { td.number.key { (quantity(answer.value, &answer.unit)) } }
-                        @if cautious { td { (cautious_words(answer)) } }
+                        @if cautious { td.tight[answer.cautious_time_s.is_some()] { (cautious_words(answer)) } }
                         td.small { (error_words(answer)) }
                     }
                 }
@@ -234,10 +234,8 @@ fn line_as_solved(findings: &Findings) -> Markup {
         }
         section {
             (section_facts(section))
-            h3 { "Layers, from the inside outwards" }
-            (layer_table(section))
-            h3 { "Materials" }
-            (material_table(section))
+            @if !section.layers.is_empty() { h3 { "Layers, from the inside outwards" } (layer_table(section)) }
+            @if !materials(section).is_empty() { h3 { "Materials" } (material_table(section)) }
             @if !section.heaters.is_empty() { h3 { "Heaters" } (heater_table(section)) }
         }
         section.together {

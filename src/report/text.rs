@@ -3,11 +3,22 @@
 /// Kelvin of 0 degC.
 pub const ZERO_DEGC_K: f64 = 273.15;
 
-/// A name without characters that steer a terminal, a page or the direction of writing: each becomes `\u{FFFD}`.
+/// A name without characters that steer a terminal, a page or the direction of writing: each becomes `□`, which the bundled font has.
 ///
 /// Markup is not touched here: every writer escapes for its own format.
 pub fn clean(name: &str) -> String {
-    name.chars().map(|character| if steers(character) { '\u{FFFD}' } else { character }).collect()
+    name.chars().map(|character| if steers(character) { '□' } else { character }).collect()
+}
+
+/// A name for a figure, where room is short: no more than 28 characters, an ellipsis for the rest.
+pub fn label(name: &str) -> String {
+    const MOST: usize = 28;
+    let name = clean(name);
+    if name.chars().count() <= MOST {
+        return name;
+    }
+    let short: String = name.chars().take(MOST - 1).collect();
+    format!("{}…", short.trim_end())
 }
 
 /// Control characters (line ends and tabs too), marks that reverse or isolate the direction of writing, invisible ones.
@@ -98,7 +109,7 @@ mod tests {
         assert_eq!(column_head("=1+1"), "'=1+1");
         assert_eq!(column_head("@sum"), "'@sum");
         assert_eq!(column_head("mid lagging"), "mid lagging");
-        assert_eq!(clean("a\u{1b}[31mb\u{202e}c\nd"), "a\u{FFFD}[31mb\u{FFFD}c\u{FFFD}d");
+        assert_eq!(clean("a\u{1b}[31mb\u{202e}c\nd"), "a□[31mb□c□d");
     }
 
     #[test]

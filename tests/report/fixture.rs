@@ -401,7 +401,7 @@ pub fn cycling() -> Findings {
     let history = &mut findings.history;
     findings.marks = vec![];
     for (row, &time_s) in history.times_s.iter().enumerate() {
-        let on = time_s < 8.0 * 3600.0 || (time_s / 1800.0).floor() as u64 % 2 == 0;
+        let on = time_s < 8.0 * 3600.0 || ((time_s / 1800.0).floor() as u64).is_multiple_of(2);
         history.heaters_w_per_m[[row, 0]] = if on { 15.0 } else { 0.0 };
         if row > 0 && history.heaters_w_per_m[[row, 0]] != history.heaters_w_per_m[[row - 1, 0]] {
             let label = if on { "trace on" } else { "trace off" };

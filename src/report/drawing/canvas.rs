@@ -30,10 +30,14 @@ pub struct Canvas<'a, DB: DrawingBackend> {
     text_drop: f64,
 }
 
+/// The drawing library takes this many ems for a font's height, by which it measures sizes.
+const HEIGHT_OF_EM: f64 = 1.24;
+
+/// The font whose em is `size`.
 fn font_of(size: f64, weight: Weight) -> FontDesc<'static> {
     font::register();
     let style = if weight == Weight::SemiBold { FontStyle::Bold } else { FontStyle::Normal };
-    FontDesc::new(FontFamily::Name(font::FAMILY), size, style)
+    FontDesc::new(FontFamily::Name(font::FAMILY), HEIGHT_OF_EM * size, style)
 }
 
 /// Width of a text, from the bundled font's own measures, whatever the backend.

@@ -1,9 +1,11 @@
 //! Temperatures over time with limits and events, the frozen share beneath, and the heaters where they switch.
 
-use super::{Axis, Curve, Dash, Dot, Figure, Level, Look, Panel, condition_of, palette, stepped, time_axis, uprights};
+use super::{
+    Axis, Curve, Dash, Dot, Figure, Level, Look, Panel, condition_of, palette, stepped, switchings, time_axis, uprights,
+};
 use crate::answer::{Answer, Findings};
 use crate::report::axis::range;
-use crate::report::text::{clean, degc, fixed};
+use crate::report::text::{clean, degc, fixed, label};
 use crate::report::{duration_words, figure::Colour};
 use crate::section::{Condition, ContentState, Face, Place, Seat, Side};
 
@@ -193,10 +195,10 @@ fn temperature_levels(findings: &Findings) -> Vec<Level> {
     let targets = section.targets.iter().map(|target| (&target.name, degc(target.at_least_k)));
     let mut levels: Vec<Level> = Vec::new();
     for (name, value) in limits.chain(targets) {
-        let label = format!("{} {} °C", clean(name), fixed(value, 2));
+        let words = format!("{} {} °C", label(name), fixed(value, 2));
         match levels.iter_mut().find(|level| level.value == value) {
-            Some(level) => level.label = format!("{}, {}", clean(name), level.label),
-            None => levels.push(Level { label, value }),
+            Some(level) => level.label = format!("{}, {}", label(name), level.label),
+            None => levels.push(Level { label: words, value }),
         }
     }
     levels
@@ -211,8 +213,8 @@ fn dots(findings: &Findings, unit_s: f64, of_shares: bool) -> Vec<Dot> {
             Some(Condition::Below(_, kelvin) | Condition::Above(_, kelvin)) => (!of_shares).then_some(degc(kelvin)),
             None => (!of_shares && answer.unit == "degC").then_some(answer.limit_value).flatten(),
         }?;
-        let label = format!("{}, {}", clean(&answer.name), duration_words(time_s, answer.danger));
-        Some(Dot { at: (time_s / unit_s, value), label })
+        let words = format!("{}, {}", label(&answer.name), duration_words(time_s, answer.danger));
+        Some(Dot { at: (time_s / unit_s, value), label: words })
     };
     let last = findings.history.times_s.last().map_or(f64::INFINITY, |time_s| time_s / unit_s * (1.0 + 1e-9));
     findings.answers.iter().filter_map(reached).filter(|dot| dot.at.0 <= last).collect()
@@ -243,10 +245,13 @@ fn heaters(findings: &Findings, times: &[f64]) -> Option<Panel> {
         .iter()
         .zip(history.heaters_w_per_m.columns())
         .zip(LOOKS.iter().cycle())
-        .map(|((heater, outputs), &(colour, dash))| Curve {
-            names: vec![clean(&heater.name)],
-            look: Look { filled: true, ..Look::line(colour, dash, 1.0) },
-            points: stepped(times.iter().copied().zip(outputs.iter().copied())),
+        .map(|((heater, outputs), &(colour, dash))| {
+            let often = switchings(outputs.iter().copied()).len() > 40;
+            Curve {
+                names: vec![clean(&heater.name)],
+                look: Look { filled: true, ..Look::line(colour, dash, if often { 0.4 } else { 1.0 }) },
+                points: stepped(times.iter().copied().zip(outputs.iter().copied())),
+            }
         })
         .collect();
     let highest = range(history.heaters_w_per_m.iter().copied()).map_or(1.0, |(_, high)| high);

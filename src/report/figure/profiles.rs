@@ -4,7 +4,7 @@ use super::{Axis, Band, Colour, Curve, Dash, Figure, Look, Panel, Upright};
 use crate::answer::Findings;
 use crate::history::History;
 use crate::report::axis::{TimeUnit, range};
-use crate::report::text::{clean, degc, fixed};
+use crate::report::text::{clean, degc, fixed, label};
 use ndarray::Array1;
 
 /// As many profiles as can be told apart.
@@ -81,11 +81,11 @@ fn bands(findings: &Findings, from_mm: f64) -> Vec<Band> {
     let section = &findings.section;
     let content_mm = section.content.radius_m * 1e3;
     let content_name = section.content.material.as_ref().map_or("inside", |material| material.name.as_str());
-    let mut bands = vec![Band { from: from_mm, to: content_mm, label: clean(content_name), tint: CONTENT_TINT }];
+    let mut bands = vec![Band { from: from_mm, to: content_mm, label: label(content_name), tint: CONTENT_TINT }];
     bands.extend(section.layers.iter().enumerate().map(|(index, layer)| Band {
         from: layer.inside_radius_m * 1e3,
         to: layer.outside_radius_m * 1e3,
-        label: clean(&layer.name),
+        label: label(&layer.name),
         tint: LAYER_TINTS[index % 2],
     }));
     bands.retain(|band| band.to > band.from);
