@@ -14,8 +14,8 @@ pub mod tables;
 pub mod text;
 
 use crate::answer::Findings;
-use std::fs::{self, File, Permissions};
-use std::io::{self, ErrorKind, Write};
+use std::fs::{self, File};
+use std::io::{self, BufWriter, ErrorKind, Write};
 use std::path::{Path, PathBuf};
 use tempfile::TempDir;
 use thiserror::Error;
@@ -105,19 +105,20 @@ impl ReportError {
 /// Where the folder cannot be made or written to, or a figure cannot be drawn; nothing of this report is then left behind unless
 /// the fault struck amid the replacing.
 pub fn write_folder(folder: &Path, findings: &Findings) -> Result<Vec<PathBuf>, ReportError> {
-    let files = files(findings)?;
     let fault = |source| ReportError::from_io(folder, source);
-    if folder.is_dir() {
-        let whole = write_beside(folder, &files).map_err(fault)?;
-        for (name, _) in &files {
+    let names = if folder.is_dir() {
+        let whole = temporary_within(folder).map_err(fault)?;
+        let names = write_files(whole.path(), folder, findings)?;
+        for name in &names {
             fs::rename(whole.path().join(name), folder.join(name)).map_err(fault)?;
         }
-        for name in FILE_NAMES.iter().filter(|name| !files.iter().any(|(written, _)| written == *name)) {
+        for name in FILE_NAMES.iter().filter(|name| !names.contains(name)) {
             match fs::remove_file(folder.join(name)) {
                 Err(error) if error.kind() != ErrorKind::NotFound => return Err(fault(error)),
                 _ => {}
             }
         }
+        names
     } else {
         if fs::symlink_metadata(folder).is_ok() {
             return Err(ReportError::NotAFolder { path: folder.into() });
@@ -127,12 +128,14 @@ pub fn write_folder(folder: &Path, findings: &Findings) -> Result<Vec<PathBuf>, 
             _ => Path::new("."),
         };
         fs::create_dir_all(parent).map_err(fault)?;
-        let whole = write_beside(parent, &files).map_err(fault)?;
+        let whole = temporary_within(parent).map_err(fault)?;
+        let names = write_files(whole.path(), folder, findings)?;
         fs::rename(whole.path(), folder).map_err(fault)?;
         // What was temporary now bears its final name: there is nothing left to clear away.
         let _ = whole.keep();
-    }
-    Ok(files.iter().map(|(name, _)| folder.join(name)).collect())
+        names
+    };
+    Ok(names.into_iter().map(|name| folder.join(name)).collect())
 }
 
 /// Shows a file with the program that the system has for its kind.
@@ -143,45 +146,45 @@ pub fn open(path: &Path) -> Result<(), ReportError> {
     opener::open(path).map_err(|error| ReportError::Opening { path: path.into(), reason: error.to_string() })
 }
 
-/// Names and contents of all files of a report.
-fn files(findings: &Findings) -> Result<Vec<(String, Vec<u8>)>, ReportError> {
-    let mut answer = serde_json::to_vec_pretty(&json::answer_json(findings)).expect("a JSON value can be written");
-    answer.push(b'\n');
-    let table = |write: fn(&mut Vec<u8>, &Findings) -> Result<(), csv::Error>| {
-        let mut bytes = Vec::new();
-        write(&mut bytes, findings).expect("rows of one length go into memory");
-        bytes
-    };
-    let mut files = vec![
-        ("answer.json".to_string(), answer),
-        ("history.csv".to_string(), table(|bytes, findings| tables::write_history(bytes, findings))),
-        ("profile.csv".to_string(), table(|bytes, findings| tables::write_profile(bytes, findings))),
-    ];
-    for figure in figure::all(findings) {
-        files.push((format!("{}.svg", figure.stem), drawing::svg(&figure)?.into_bytes()));
-        files.push((format!("{}.png", figure.stem), drawing::png(&figure)?));
-    }
-    files.push(("report.html".to_string(), page::page(findings)?.into_bytes()));
-    Ok(files)
-}
-
-/// Writes all files, down to the disk, into a temporary folder within a folder.
-fn write_beside(folder: &Path, files: &[(String, Vec<u8>)]) -> io::Result<TempDir> {
+/// A temporary folder with the ordinary permissions of a new one, removed when it is dropped.
+fn temporary_within(folder: &Path) -> io::Result<TempDir> {
     let mut builder = tempfile::Builder::new();
     builder.prefix(".stillwarm-");
     #[cfg(unix)]
     {
-        // The ordinary permissions of a new folder: the user's mask still applies.
         use std::os::unix::fs::PermissionsExt;
-        builder.permissions(Permissions::from_mode(0o777));
+        // The user's mask still applies.
+        builder.permissions(fs::Permissions::from_mode(0o777));
     }
-    let whole = builder.tempdir_in(folder)?;
-    for (name, bytes) in files {
-        let mut file = File::create(whole.path().join(name))?;
-        file.write_all(bytes)?;
-        file.sync_all()?;
+    builder.tempdir_in(folder)
+}
+
+/// Writes every file of the report, down to the disk, and gives their names; faults name the folder that they were meant for.
+fn write_files(into: &Path, meant_for: &Path, findings: &Findings) -> Result<Vec<&'static str>, ReportError> {
+    let fault = |source| ReportError::from_io(meant_for, source);
+    let mut names = Vec::new();
+    let mut write = |name: &'static str, fill: &dyn Fn(&mut BufWriter<File>) -> io::Result<()>| {
+        names.push(name);
+        let mut file = BufWriter::new(File::create(into.join(name))?);
+        fill(&mut file)?;
+        file.into_inner()?.sync_all()
+    };
+    write("answer.json", &|file| {
+        serde_json::to_writer_pretty(&mut *file, &json::answer_json(findings))?;
+        file.write_all(b"\n")
+    })
+    .map_err(fault)?;
+    write("history.csv", &|file| Ok(tables::write_history(file, findings)?)).map_err(fault)?;
+    write("profile.csv", &|file| Ok(tables::write_profile(file, findings)?)).map_err(fault)?;
+    for figure in figure::all(findings) {
+        let (svg, png) = (drawing::svg(&figure)?, drawing::png(&figure)?);
+        let (svg_name, png_name) = figure.file_names();
+        write(svg_name, &|file| file.write_all(svg.as_bytes())).map_err(fault)?;
+        write(png_name, &|file| file.write_all(&png)).map_err(fault)?;
     }
-    Ok(whole)
+    let page = page::page(findings)?;
+    write("report.html", &|file| file.write_all(page.as_bytes())).map_err(fault)?;
+    Ok(names)
 }
 
 /// stand-in

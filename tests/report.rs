@@ -210,7 +210,7 @@ fn every_curve_lies_within_its_axis() {
                 for point in panel.curves.iter().flat_map(|curve| &curve.points).filter(|point| point.1.is_finite()) {
                     let inside = (-1e-9..=1.0 + 1e-9).contains(&panel.axis.share(point.1))
                         && (-1e-9..=1.0 + 1e-9).contains(&figure.axis.share(point.0));
-                    assert!(inside, "{name}, {}: {point:?} outside {:?}", figure.stem, panel.axis);
+                    assert!(inside, "{name}, {}: {point:?} outside {:?}", figure.kind.name(), panel.axis);
                 }
             }
         }
@@ -260,7 +260,7 @@ fn the_heat_balance_closes_at_every_time() {
 #[test]
 fn a_state_without_a_history_has_a_profile_only() {
     let figures = figure::all(&fixture::steady());
-    assert_eq!(figures.iter().map(|figure| figure.stem).collect::<Vec<_>>(), ["profiles"]);
+    assert_eq!(figures.iter().map(|figure| figure.kind.name()).collect::<Vec<_>>(), ["profiles"]);
     assert_eq!(figures[0].panels[0].curves[0].names, ["settled"]);
 }
 

@@ -34,17 +34,17 @@ const LINE: f64 = 7.0;
 
 /// A figure could not be drawn.
 #[derive(Debug, Error)]
-#[error("the figure {stem} could not be drawn: {reason}")]
+#[error("the figure of {figure} could not be drawn: {reason}")]
 pub struct DrawingError {
-    /// Name of the figure's files.
-    pub stem: &'static str,
+    /// Which figure.
+    pub figure: &'static str,
     /// What the drawing library says.
     pub reason: String,
 }
 
 impl DrawingError {
     fn new(figure: &Figure, reason: impl ToString) -> Self {
-        DrawingError { stem: figure.stem, reason: reason.to_string() }
+        DrawingError { figure: figure.kind.name(), reason: reason.to_string() }
     }
 }
 

@@ -147,11 +147,33 @@ pub struct Panel {
     pub dots: Vec<Dot>,
 }
 
+/// Which figure.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Kind {
+    /// Temperatures over time.
+    Histories,
+    /// Temperature over the radius.
+    Profiles,
+    /// Heat flows over time.
+    HeatBalance,
+}
+
+impl Kind {
+    /// Its name, as files and links have it.
+    pub fn name(self) -> &'static str {
+        match self {
+            Kind::Histories => "histories",
+            Kind::Profiles => "profiles",
+            Kind::HeatBalance => "heat-balance",
+        }
+    }
+}
+
 /// A figure: panels above each other over one horizontal axis.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Figure {
-    /// Name of its files, without the ending.
-    pub stem: &'static str,
+    /// Which figure it is.
+    pub kind: Kind,
     /// What it shows.
     pub title: String,
     /// What is needed to read it, in one line.
@@ -166,6 +188,17 @@ pub struct Figure {
     pub bands: Vec<Band>,
     /// Whether the curves' names make a list in the order of the curves, as where their ends lie too close to name them there.
     pub listed: bool,
+}
+
+impl Figure {
+    /// Names of the figure's files: SVG and PNG.
+    pub fn file_names(&self) -> (&'static str, &'static str) {
+        match self.kind {
+            Kind::Histories => ("histories.svg", "histories.png"),
+            Kind::Profiles => ("profiles.svg", "profiles.png"),
+            Kind::HeatBalance => ("heat-balance.svg", "heat-balance.png"),
+        }
+    }
 }
 
 /// The figures that the findings can fill, in the order in which they are read: histories need at least two recorded times.

@@ -94,7 +94,10 @@ fn answers(findings: &Findings) -> Markup {
             h2 { "Answers" }
             (answer_table(&findings.answers))
             p.small {
-                "Times to a danger are rounded down, times to recover up. The cautious time takes worse assumptions, stated below. "
+                @if findings.answers.iter().any(|answer| answer.time_s.is_some()) { "Times to a danger are rounded down, times to recover up. " }
+                @if findings.answers.iter().any(|answer| answer.cautious_outcome.is_some()) {
+                    "The cautious answer takes worse assumptions, stated below. "
+                }
                 "The numerical error is that of the solution only: it says nothing of the accuracy of the inputs."
             }
             @if let Some(other) = &findings.other_start {
@@ -480,7 +483,7 @@ fn figures_of(drawn: &[(Figure, String)]) -> Markup {
     html! {
         @for (figure, svg) in drawn {
             // The drawing library escapes what it writes.
-            figure id=(figure.stem) { (PreEscaped(svg)) }
+            figure id=(figure.kind.name()) { (PreEscaped(svg)) }
         }
     }
 }

@@ -1,6 +1,6 @@
 //! Where the heat comes from and where it goes, over time.
 
-use super::{Axis, Curve, Dash, Figure, Look, Panel, palette, switchings, time_axis, uprights};
+use super::{Axis, Curve, Dash, Figure, Kind, Look, Panel, palette, switchings, time_axis, uprights};
 use crate::answer::Findings;
 use crate::report::axis::range;
 use crate::report::text::clean;
@@ -57,7 +57,7 @@ pub fn heat_balance(findings: &Findings) -> Figure {
         note.push_str(" Where heaters cycle: means of each cycle.");
     }
     Figure {
-        stem: "heat-balance",
+        kind: Kind::HeatBalance,
         title: format!("{}: heat balance over time", clean(&findings.section.title)),
         note,
         uprights: uprights(findings, unit, &axis),

@@ -1,7 +1,8 @@
 //! Temperatures over time with limits and events, the frozen share beneath, and the heaters where they switch.
 
 use super::{
-    Axis, Curve, Dash, Dot, Figure, Level, Look, Panel, condition_of, palette, stepped, switchings, time_axis, uprights,
+    Axis, Curve, Dash, Dot, Figure, Kind, Level, Look, Panel, condition_of, palette, stepped, switchings, time_axis,
+    uprights,
 };
 use crate::answer::{Answer, Findings};
 use crate::report::axis::range;
@@ -27,7 +28,7 @@ pub fn histories(findings: &Findings) -> Figure {
     panels.extend(frozen_share(findings, &times, unit.seconds));
     panels.extend(heaters(findings, &times));
     Figure {
-        stem: "histories",
+        kind: Kind::Histories,
         title: format!("{}: temperatures over time", clean(&findings.section.title)),
         note:
             "Mid-run section in sound lagging; faces that lie together share a curve. Dashed lines: limits and targets."
@@ -211,7 +212,9 @@ fn dots(findings: &Findings, unit_s: f64, of_shares: bool) -> Vec<Dot> {
         let value = match condition_of(&findings.section, answer) {
             Some(Condition::Frozen(share) | Condition::Thawed(share)) => of_shares.then_some(100.0 * share),
             Some(Condition::Below(_, kelvin) | Condition::Above(_, kelvin)) => (!of_shares).then_some(degc(kelvin)),
-            None => (!of_shares && answer.unit == "degC").then_some(answer.limit_value).flatten(),
+            None if answer.unit == "degC" => answer.limit_value.filter(|_| !of_shares),
+            None if answer.unit == "-" => answer.limit_value.filter(|_| of_shares).map(|share| 100.0 * share),
+            None => None,
         }?;
         let words = format!("{}, {}", label(&answer.name), duration_words(time_s, answer.danger));
         Some(Dot { at: (time_s / unit_s, value), label: words })

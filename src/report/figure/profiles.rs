@@ -1,6 +1,6 @@
 //! Temperature over the radius at several times, with the layers shaded and named.
 
-use super::{Axis, Band, Colour, Curve, Dash, Figure, Look, Panel, Upright};
+use super::{Axis, Band, Colour, Curve, Dash, Figure, Kind, Look, Panel, Upright};
 use crate::answer::Findings;
 use crate::history::History;
 use crate::report::axis::{TimeUnit, range};
@@ -9,6 +9,9 @@ use ndarray::Array1;
 
 /// As many profiles as can be told apart.
 const MOST_PROFILES: usize = 6;
+
+/// Up to so many records, profiles are drawn at recorded times only.
+const FEW_RECORDS: usize = 40;
 
 /// Profiles that differ by less than this share of the range are told apart no more.
 const TOLD_APART: f64 = 0.03;
@@ -22,7 +25,7 @@ const DASHES: [Dash; 3] = [Dash::Solid, Dash::Long, Dash::DashDot];
 const CONTENT_TINT: Colour = (0xE4, 0xEF, 0xF8);
 const LAYER_TINTS: [Colour; 2] = [(0xE6, 0xE3, 0xDD), (0xF7, 0xF4, 0xEE)];
 
-/// Radial profiles at the start and at the round times that differ most; the last record where none is near.
+/// Radial profiles at the start and at the round times that differ most.
 pub fn profiles(findings: &Findings) -> Figure {
     let (section, history) = (&findings.section, &findings.history);
     let radii_mm: Vec<f64> = history.profile_radii_m.iter().map(|radius_m| radius_m * 1e3).collect();
@@ -59,7 +62,7 @@ pub fn profiles(findings: &Findings) -> Figure {
         dots: Vec::new(),
     };
     Figure {
-        stem: "profiles",
+        kind: Kind::Profiles,
         title: format!("{}: temperature over the radius", clean(&section.title)),
         note: "A jump at a face is the temperature drop across its contact.".into(),
         axis: Axis::new("Radius [mm]", from_mm, outermost_mm, 10),
@@ -92,18 +95,18 @@ fn bands(findings: &Findings, from_mm: f64) -> Vec<Band> {
     bands
 }
 
-/// Times and profiles [K] to draw: the start, then again and again the round time whose profile is farthest from all
-/// chosen ones, in order of time.
+/// Times and profiles [K] to draw, in order of time: the start, then again and again the time whose profile is farthest from all
+/// chosen ones.
 fn chosen(history: &History) -> Vec<(f64, Array1<f64>)> {
     let times = history.times_s.as_slice().expect("times lie in one piece");
     let (first_s, last_s) = (times[0], times[times.len() - 1]);
     let unit = TimeUnit::for_span(last_s - first_s);
-    let mut candidates: Vec<(f64, Array1<f64>)> = unit
-        .round_times(last_s)
-        .into_iter()
-        .filter(|&time| time > first_s)
-        .map(|time| (time, profile_at(history, time)))
-        .collect();
+    // Few records are shown as they are; between many a straight line serves for a round time.
+    let mut wanted: Vec<f64> = if times.len() <= FEW_RECORDS { times.to_vec() } else { unit.round_times(last_s) };
+    wanted.retain(|&time_s| time_s > first_s && time_s < last_s);
+    wanted.push(last_s);
+    let mut candidates: Vec<(f64, Array1<f64>)> =
+        wanted.into_iter().map(|time_s| (time_s, profile_at(history, time_s))).collect();
     let mut chosen = vec![(first_s, history.profiles_k.row(0).to_owned())];
     let Some((low, high)) = range(history.profiles_k.iter().copied()) else { return chosen };
     while chosen.len() < MOST_PROFILES {
