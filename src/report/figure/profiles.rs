@@ -104,7 +104,7 @@ fn chosen(history: &History) -> Vec<(f64, Array1<f64>)> {
     // Few records are shown as they are; between many a straight line serves for a round time.
     let mut wanted: Vec<f64> = if times.len() <= FEW_RECORDS { times.to_vec() } else { unit.round_times(last_s) };
     wanted.retain(|&time_s| time_s > first_s && time_s < last_s);
-    wanted.push(last_s);
+    wanted.extend((last_s > first_s).then_some(last_s));
     let mut candidates: Vec<(f64, Array1<f64>)> =
         wanted.into_iter().map(|time_s| (time_s, profile_at(history, time_s))).collect();
     let mut chosen = vec![(first_s, history.profiles_k.row(0).to_owned())];
