@@ -4,6 +4,7 @@ pub mod answer;
 pub mod history;
 pub mod march;
 pub mod material;
+pub mod mesh;
 pub mod report;
 pub mod section;
 pub mod series;
