@@ -8,6 +8,7 @@ pub mod library;
 pub mod march;
 pub mod material;
 pub mod mesh;
+pub mod report;
 pub mod section;
 pub mod series;
 pub mod units;
