@@ -13,12 +13,16 @@
 //! | `start` | the state at 0 h: uniform, reading, held, cycling |
 //! | `controls` | supply, heaters, thermostats, outside, content |
 //! | `view`, `record` | named temperatures of a state, rows of a history |
+//! | `network` | the sparse conductance matrix against which steady states are held |
 //! | `steady` | the steady state and the output that holds a temperature |
 
 mod chain;
 mod controls;
+#[cfg(test)]
+mod fixtures;
 mod front;
 mod link;
+mod network;
 pub mod plan;
 mod record;
 mod runner;
