@@ -13,12 +13,16 @@
 //! | `start` | the state at 0 h: uniform, reading, held, cycling |
 //! | `controls` | supply, heaters, thermostats, outside, content |
 //! | `view`, `record` | named temperatures of a state, rows of a history |
+//! | `network` | the sparse conductance matrix against which steady states are held |
 //! | `steady` | the steady state and the output that holds a temperature |
 
 mod chain;
 mod controls;
+#[cfg(test)]
+mod fixtures;
 mod front;
 mod link;
+mod network;
 pub mod plan;
 mod record;
 mod runner;
@@ -156,6 +160,7 @@ pub fn run(
     let mut records = Records::new(&plan.record);
     let mut steps = 0;
     let mut stopped = None;
+    let mut settled = false;
     let mut cycle: Option<Vec<f64>> = None;
     let mut cycle_repeats = false;
     let mut recent_switchings = vec![(0.0, 0); section.heaters.len()];
@@ -172,7 +177,7 @@ pub fn run(
         {
             break End::WeatherEnded;
         }
-        if plan.stop_when_settled && constant && events.peek().is_none() && (cycle_repeats || at_rest(&runner)) {
+        if settled || (plan.stop_when_settled && constant && events.peek().is_none() && cycle_repeats) {
             break End::Settled;
         }
         let mut until = plan.until_s;
@@ -208,7 +213,9 @@ pub fn run(
                 return Ok(Flow::Stop);
             }
             let answered = plan.stop_when_answered && watches.iter().all(|watch| watch.sighting.time_s.is_some());
-            if answered || (settles && steps % 8 == 0 && at_rest(runner)) {
+            // Only an accepted step that no event cut short can tell rest from a pause.
+            settled = settles && at_rest(runner);
+            if answered || settled {
                 return Ok(Flow::Stop);
             }
             Ok(Flow::Go)
@@ -277,10 +284,10 @@ pub fn run(
     })
 }
 
-/// Whether what is left of the line's change is too small to matter.
+/// Whether what is left of the line's change is too small to matter, judged by its last step.
 fn at_rest(runner: &Runner) -> bool {
-    let (kelvin, share) = runner.rates();
-    kelvin * runner.time_scale < SETTLED_K && share * runner.time_scale < SETTLED_SHARE
+    let (kelvin, share) = runner.change();
+    kelvin < SETTLED_K && share < SETTLED_SHARE
 }
 
 /// Time within the last step at which a watch crosses zero, on the dense output (Illinois' rule).

@@ -501,8 +501,15 @@ impl<'a> Runner<'a> {
                 } else {
                     self.chain.face_temperatures(cell, outside_k, ws).1
                 };
-                let point = self.chain.material(cell).sharp.map_or(f64::NAN, |sharp| sharp.temperature_k);
-                if freezing { face - point } else { point - face }
+                let Some(sharp) = self.chain.material(cell).sharp else { return 1.0 };
+                // A cell that changes phase stands at the freezing point, and so may its face: go by what it lacks.
+                if freezing {
+                    let lack = (x[cell] - sharp.enthalpy_liquid) / sharp.capacity_liquid;
+                    (face - sharp.temperature_k).min(lack.max(-1.0))
+                } else {
+                    let lack = (sharp.enthalpy_solid - x[cell]) / sharp.capacity_liquid;
+                    (sharp.temperature_k - face).min(lack.max(-1.0))
+                }
             }
             Trigger::Thermostat { heater, on } => {
                 let Some(thermostat) = self.section.heaters[heater].thermostat else { return 1.0 };
@@ -930,18 +937,21 @@ impl<'a> Runner<'a> {
         }
     }
 
-    /// Largest rate of temperature [K/s] and of the content's or a layer's frozen share [1/s].
-    pub fn rates(&self) -> (f64, f64) {
+    /// What the last step changed, carried on for the section's time scale where the step was shorter: the largest change
+    /// of a temperature [K], and of a region's frozen share [-]. (Rates of the moment would tell of Newton's residual.)
+    pub fn change(&self) -> (f64, f64) {
         let (mut kelvin, mut share) = (0.0_f64, 0.0_f64);
+        let longer = (self.time_scale / self.step_length).max(1.0);
         for i in self.chain.first..self.h.len() {
             let material = self.chain.material(i);
             let part = self.chain.frozen_share(i, &self.x);
+            let change = (self.h[i] - self.h_next[i]).abs() * longer;
             if let (Some(sharp), true) = (&material.sharp, self.chain.fronts[i].is_some() || (part > 0.0 && part < 1.0))
             {
-                share = share.max((self.f[i] / (sharp.latent * self.chain.region_area[self.chain.region[i]])).abs());
+                share = share.max(change / (sharp.latent * self.chain.region_area[self.chain.region[i]]));
             } else {
                 let rate = material.enthalpy.rate(self.ws.temperature[i]);
-                kelvin = kelvin.max((self.f[i] / (self.chain.area[i] * rate)).abs());
+                kelvin = kelvin.max(change / (self.chain.area[i] * rate));
             }
         }
         (kelvin, share)
