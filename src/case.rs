@@ -14,6 +14,9 @@ mod series_file;
 mod text_file;
 mod walk;
 
+#[cfg(test)]
+mod tests;
+
 use crate::faults::{Fault, Faults};
 use crate::section::Section;
 use series_file::SeriesFiles;
