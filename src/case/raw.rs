@@ -1,7 +1,7 @@
 //! What the user wrote, table by table, each value with its place in the text: shape only, no meaning yet.
 //!
 //! A field is `None` where its key is absent or its value was faulty; the fault has then been told. Names are not yet
-//! looked up, sizes not yet worked out: that is the next step's, [`resolve`](super::resolve).
+//! looked up, sizes not yet worked out: that is the next step's, `resolve`.
 
 use super::keys;
 use super::walk::{Fields, Node, Value, list_of, quantity_of, tolerance_of};
