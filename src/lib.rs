@@ -7,6 +7,8 @@ pub mod history;
 pub mod library;
 pub mod march;
 pub mod material;
+pub mod mesh;
+pub mod report;
 pub mod section;
 pub mod series;
 pub mod units;

@@ -219,6 +219,8 @@ pub struct Sharp {
     pub inertia_solid: f64,
     /// `rho c / k` of the liquid at the freezing point [s/m2].
     pub inertia_liquid: f64,
+    /// `rho c` of the liquid at the freezing point [J/(m3 K)].
+    pub capacity_liquid: f64,
 }
 
 /// A material ready for the solver.
@@ -364,6 +366,7 @@ impl Material {
                 enthalpy_liquid,
                 inertia_solid: c_solid / interpolate(&freezing.solid_conductivity, solidus),
                 inertia_liquid: c_liquid / interpolate(&spec.conductivity, liquidus),
+                capacity_liquid: c_liquid,
             }
         });
         Ok(Material {
