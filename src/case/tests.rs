@@ -323,6 +323,16 @@ fn every_key_of_later_work_is_refused_by_name() {
     assert!(count > 30);
 }
 
+#[test]
+fn nesting_without_end_and_texts_without_end_are_refused() {
+    for opening in ["a = [", "a = { b = ", "[a."] {
+        let text = opening.repeat(1).to_owned() + &opening.trim_start_matches("a = ").repeat(50_000);
+        assert!(read(&text, &[]).is_err(), "{opening}");
+    }
+    assert!(read(DESIGN, &[&format!("title={}", "[".repeat(50_000))]).is_ok());
+    assert!(read(&format!("{DESIGN}\n{}", "[[probe]]\n".repeat(2000)), &[]).is_err());
+}
+
 /// Loads and shows; panics only where the reader does, or where it refuses without a reason.
 fn survives(text: &str, overrides: &[String]) {
     match load_text("case.toml", text, &folder(), overrides) {
