@@ -326,7 +326,7 @@ fn every_key_of_later_work_is_refused_by_name() {
 #[test]
 fn nesting_without_end_and_texts_without_end_are_refused() {
     for opening in ["a = [", "a = { b = ", "[a."] {
-        let text = opening.repeat(1).to_owned() + &opening.trim_start_matches("a = ").repeat(50_000);
+        let text = format!("{opening}{}", opening.trim_start_matches("a = ").repeat(50_000));
         assert!(read(&text, &[]).is_err(), "{opening}");
     }
     assert!(read(DESIGN, &[&format!("title={}", "[".repeat(50_000))]).is_ok());
