@@ -13,18 +13,24 @@
 //! | `start` | the state at 0 h: uniform, reading, held, cycling |
 //! | `controls` | supply, heaters, thermostats, outside, content |
 //! | `view`, `record` | named temperatures of a state, rows of a history |
+//! | `network` | the sparse conductance matrix against which steady states are held |
 //! | `steady` | the steady state and the output that holds a temperature |
 
 mod chain;
 mod controls;
+#[cfg(test)]
+mod fixtures;
 mod front;
 mod link;
+mod network;
 pub mod plan;
 mod record;
 mod runner;
 mod scheme;
 mod start;
 pub mod steady;
+#[cfg(test)]
+mod tests;
 mod view;
 
 pub use plan::*;
@@ -43,9 +49,6 @@ const SETTLED_K: f64 = 1e-3;
 const SETTLED_SHARE: f64 = 1e-5;
 /// Steps between two reports of progress.
 const PROGRESS_STEPS: usize = 64;
-/// Switchings of one heater within this share of the section's time scale that count as chattering.
-const CHATTER_SWITCHINGS: usize = 50;
-const CHATTER_SHARE: f64 = 1e-5;
 /// A recording of every step is thinned beyond this many rows.
 const MOST_ROWS: usize = 20_000;
 
@@ -156,9 +159,9 @@ pub fn run(
     let mut records = Records::new(&plan.record);
     let mut steps = 0;
     let mut stopped = None;
+    let mut settled = false;
     let mut cycle: Option<Vec<f64>> = None;
     let mut cycle_repeats = false;
-    let mut recent_switchings = vec![(0.0, 0); section.heaters.len()];
     let end = loop {
         if plan.stop_when_answered && watches.iter().all(|watch| watch.sighting.time_s.is_some()) {
             break End::Answered;
@@ -172,7 +175,7 @@ pub fn run(
         {
             break End::WeatherEnded;
         }
-        if plan.stop_when_settled && constant && events.peek().is_none() && (cycle_repeats || at_rest(&runner)) {
+        if settled || (plan.stop_when_settled && constant && events.peek().is_none() && cycle_repeats) {
             break End::Settled;
         }
         let mut until = plan.until_s;
@@ -203,12 +206,14 @@ pub fn run(
             }
             records.take(runner, &mut recorder, from, to);
             steps += 1;
-            if steps % PROGRESS_STEPS == 0 && !progress(to) {
+            if steps % PROGRESS_STEPS == 1 && !progress(to) {
                 stopped = Some(to);
                 return Ok(Flow::Stop);
             }
             let answered = plan.stop_when_answered && watches.iter().all(|watch| watch.sighting.time_s.is_some());
-            if answered || (settles && steps % 8 == 0 && at_rest(runner)) {
+            // Only an accepted step that no event cut short can tell rest from a pause.
+            settled = settles && at_rest(runner);
+            if answered || settled {
                 return Ok(Flow::Stop);
             }
             Ok(Flow::Go)
@@ -228,20 +233,6 @@ pub fn run(
             if powered {
                 let name = &section.heaters[heater].name;
                 marks.push(Mark { time_s: runner.time, label: format!("{name} {}", if on { "on" } else { "off" }) });
-            }
-            let recent = &mut recent_switchings[heater];
-            if runner.time - recent.0 > CHATTER_SHARE * runner.time_scale {
-                *recent = (runner.time, 0);
-            }
-            recent.1 += 1;
-            if recent.1 > CHATTER_SWITCHINGS {
-                return Err(MarchError::NotModelled {
-                    reason: format!(
-                        "at {:.3} s the thermostat of '{}' switches on and off without end: its own heater moves the place it \
-                         senses across its whole differential at once",
-                        runner.time, section.heaters[heater].name
-                    ),
-                });
             }
             if on && settles {
                 let state = runner.temperatures();
@@ -277,10 +268,10 @@ pub fn run(
     })
 }
 
-/// Whether what is left of the line's change is too small to matter.
+/// Whether what is left of the line's change is too small to matter, judged by its last step.
 fn at_rest(runner: &Runner) -> bool {
-    let (kelvin, share) = runner.rates();
-    kelvin * runner.time_scale < SETTLED_K && share * runner.time_scale < SETTLED_SHARE
+    let (kelvin, share) = runner.change();
+    kelvin < SETTLED_K && share < SETTLED_SHARE
 }
 
 /// Time within the last step at which a watch crosses zero, on the dense output (Illinois' rule).

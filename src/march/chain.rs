@@ -182,6 +182,16 @@ impl Chain {
         self.region.len()
     }
 
+    /// ln ratio from a cell's point to its outer face over 2 pi [-].
+    pub fn lambda_outer(&self, cell: usize) -> f64 {
+        self.lambda_out[cell]
+    }
+
+    /// ln ratio from a cell's inner face to its point over 2 pi [-].
+    pub fn lambda_inner(&self, cell: usize) -> f64 {
+        self.lambda_in[cell]
+    }
+
     pub fn material(&self, cell: usize) -> &Material {
         &self.materials[self.region[cell]]
     }

@@ -26,6 +26,9 @@ const LANDING_SHARE: f64 = 1e-5;
 const DEAD_BAND: f64 = 1e-3;
 /// A cell counts as all liquid (or all solid) while what is missing is worth this many temperature tolerances.
 const WHOLE_TOLERANCES: f64 = 20.0;
+/// A thermostat that switches this often within this time chatters [s].
+const CHATTER_SWITCHINGS: usize = 200;
+const CHATTER_S: f64 = 100.0;
 /// Shortest step over the time scale of the section.
 const SHORTEST_STEP: f64 = 1e-16;
 
@@ -111,6 +114,8 @@ pub(super) struct Runner<'a> {
     pub last_event: String,
     /// Switchings of each heater's thermostat: (on, off).
     pub switchings: Vec<(usize, usize)>,
+    /// Since when each thermostat's recent switchings are counted [s], and how many there were.
+    recent_switchings: Vec<(f64, usize)>,
     /// Whether any ice has appeared in the content, or was there from the start.
     pub content_has_frozen: bool,
 }
@@ -160,6 +165,7 @@ impl<'a> Runner<'a> {
             effort: Effort { cells, ..Effort::default() },
             last_event: "start".into(),
             switchings: vec![(0, 0); section.heaters.len()],
+            recent_switchings: vec![(0.0, 0); section.heaters.len()],
             content_has_frozen: false,
             h,
             x,
@@ -501,8 +507,15 @@ impl<'a> Runner<'a> {
                 } else {
                     self.chain.face_temperatures(cell, outside_k, ws).1
                 };
-                let point = self.chain.material(cell).sharp.map_or(f64::NAN, |sharp| sharp.temperature_k);
-                if freezing { face - point } else { point - face }
+                let Some(sharp) = self.chain.material(cell).sharp else { return 1.0 };
+                // A cell that changes phase stands at the freezing point, and so may its face: go by what it lacks.
+                if freezing {
+                    let lack = (x[cell] - sharp.enthalpy_liquid) / sharp.capacity_liquid;
+                    (face - sharp.temperature_k).min(lack.max(-1.0))
+                } else {
+                    let lack = (sharp.enthalpy_solid - x[cell]) / sharp.capacity_liquid;
+                    (sharp.temperature_k - face).min(lack.max(-1.0))
+                }
             }
             Trigger::Thermostat { heater, on } => {
                 let Some(thermostat) = self.section.heaters[heater].thermostat else { return 1.0 };
@@ -627,6 +640,23 @@ impl<'a> Runner<'a> {
                     count.1 += 1
                 }
                 let name = &self.section.heaters[heater].name;
+                let recent = &mut self.recent_switchings[heater];
+                if self.time - recent.0 > CHATTER_S || self.time < recent.0 {
+                    *recent = (self.time, 0);
+                }
+                recent.1 += 1;
+                if recent.1 > CHATTER_SWITCHINGS {
+                    return Err(MarchError::NotModelled {
+                        reason: format!(
+                            "around {:.0} s the thermostat of '{name}' switches {CHATTER_SWITCHINGS} times within {:.3} s: its own \
+                             heater throws the place that it senses across the whole differential, as a face without heat \
+                             capacity allows\nhint: let it sense a place that the heater does not sit on, or widen the \
+                             differential",
+                            self.time,
+                            self.time - recent.0
+                        ),
+                    });
+                }
                 self.last_event = format!("{name} {}", if on { "on" } else { "off" });
                 self.transition(|_| {})?;
                 self.shorten_after_jump();
@@ -930,18 +960,21 @@ impl<'a> Runner<'a> {
         }
     }
 
-    /// Largest rate of temperature [K/s] and of the content's or a layer's frozen share [1/s].
-    pub fn rates(&self) -> (f64, f64) {
+    /// What the last step changed, carried on for the section's time scale where the step was shorter: the largest change
+    /// of a temperature [K], and of a region's frozen share [-]. (Rates of the moment would tell of Newton's residual.)
+    pub fn change(&self) -> (f64, f64) {
         let (mut kelvin, mut share) = (0.0_f64, 0.0_f64);
+        let longer = (self.time_scale / self.step_length).max(1.0);
         for i in self.chain.first..self.h.len() {
             let material = self.chain.material(i);
             let part = self.chain.frozen_share(i, &self.x);
+            let change = (self.h[i] - self.h_next[i]).abs() * longer;
             if let (Some(sharp), true) = (&material.sharp, self.chain.fronts[i].is_some() || (part > 0.0 && part < 1.0))
             {
-                share = share.max((self.f[i] / (sharp.latent * self.chain.region_area[self.chain.region[i]])).abs());
+                share = share.max(change / (sharp.latent * self.chain.region_area[self.chain.region[i]]));
             } else {
                 let rate = material.enthalpy.rate(self.ws.temperature[i]);
-                kelvin = kelvin.max((self.f[i] / (self.chain.area[i] * rate)).abs());
+                kelvin = kelvin.max(change / (self.chain.area[i] * rate));
             }
         }
         (kelvin, share)

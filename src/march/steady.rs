@@ -5,6 +5,7 @@
 //! fixed temperature leaves one unknown, the heat that it brings.
 
 use super::controls::Controls;
+use super::network::Network;
 use super::plan::{MarchError, Settings};
 use super::record::Recorder;
 use super::runner::Runner;
@@ -25,6 +26,9 @@ pub struct Steady {
     /// worked out from the solution (temperature drop over the heat flow that causes it). A layer that passes no heat is
     /// left out.
     pub resistances: Vec<(String, f64)>,
+    /// Largest heat unaccounted for at any cell or face, by the sparse conductance matrix of the section [W/m]: the state's
+    /// own audit.
+    pub imbalance_w_per_m: f64,
 }
 
 fn prepared<'a>(section: &'a Section, mesh: &'a Mesh, heaters_w_per_m: &[f64]) -> Result<Runner<'a>, MarchError> {
@@ -55,7 +59,12 @@ fn describe(section: &Section, mesh: &Mesh, runner: &Runner) -> Steady {
     let view = runner.view();
     let mut recorder = Recorder::new(section, mesh);
     recorder.push(0.0, &view);
-    Steady { snapshot: view.snapshot(), history: recorder.finish(), resistances: resistances(&view) }
+    Steady {
+        snapshot: view.snapshot(),
+        history: recorder.finish(),
+        resistances: resistances(&view),
+        imbalance_w_per_m: Network::new(&view).imbalance(),
+    }
 }
 
 fn resistances(view: &View) -> Vec<(String, f64)> {
@@ -121,4 +130,37 @@ pub fn factor_that_holds(section: &Section, place: Place, temperature_k: f64) ->
     })?;
     let runner = prepared(section, &mesh, &scaled(factor))?;
     Ok((factor, describe(section, &mesh, &runner)))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::march::fixtures;
+
+    #[test]
+    fn the_sparse_matrix_finds_nothing_unaccounted_for() {
+        for section in fixtures::sections() {
+            let outputs: Vec<f64> = section.heaters.iter().map(|heater| heater.output_per_line_w_per_m()).collect();
+            let steady = balance(&section, &outputs).unwrap();
+            let scale = steady.snapshot.lost_w_per_m.abs().max(outputs.iter().sum());
+            assert!(
+                steady.imbalance_w_per_m < 1e-8 * scale.max(1.0),
+                "{}: {:.1e} W/m of {scale:.1} W/m",
+                section.title,
+                steady.imbalance_w_per_m
+            );
+        }
+    }
+
+    #[test]
+    fn the_sparse_matrix_sees_a_state_that_is_not_steady() {
+        let section = fixtures::composite();
+        let mesh = Mesh::new(&section, 1.0, None);
+        let runner = prepared(&section, &mesh, &[15.0]).unwrap();
+        let mut network = Network::new(&runner.view());
+        assert!(network.imbalance() < 1e-8);
+        let middle = network.temperature.len() / 2;
+        network.temperature[middle] += 1e-3;
+        assert!(network.imbalance() > 1e-6);
+    }
 }
