@@ -4,7 +4,8 @@
 
 use ndarray::{Array1, Array2};
 
-/// Recorded states, one row a time.
+/// Recorded states, one row a time. A row at the instant of an event or a switching tells the state before it, and so does
+/// the start: heat flows and outputs of a row are those of the interval that ends with it.
 #[derive(Debug, Clone)]
 pub struct History {
     /// Recorded times, ascending, the start first [s].

@@ -123,15 +123,16 @@ pub fn run(
     let start = runner.view().snapshot();
     let mut recorder = Recorder::new(section, &mesh);
     let mut marks = Vec::new();
+    // A row at the instant of a switching tells the state before it, and so does the start.
+    recorder.push(0.0, &runner.view());
 
-    // Events at 0 h happen before anything is recorded or watched, but after the start has been told.
+    // Events at 0 h happen before anything is watched.
     let mut events = section.events.iter().filter(|event| event.time_s <= plan.until_s).peekable();
     while let Some(event) = events.next_if(|event| event.time_s <= 0.0) {
         let label = runner.apply(&event.change)?;
         marks.push(Mark { time_s: 0.0, label });
     }
     runner.settle_triggers()?;
-    recorder.push(0.0, &runner.view());
 
     let liquidus_k =
         section.content.material.as_ref().and_then(|material| material.freezing_k).map_or(f64::NAN, |range| range.1);
@@ -256,7 +257,6 @@ pub fn run(
             let label = runner.apply(&event.change)?;
             marks.push(Mark { time_s: runner.time, label });
         }
-        records.after_switching(&runner, &mut recorder);
     };
 
     if matches!(plan.record, Recording::Ends) && recorder.last_time() != Some(runner.time) {
@@ -359,14 +359,6 @@ impl Records {
                 recorder.push(time, &view);
             }
             self.next += 1;
-        }
-    }
-
-    /// A row at the instant of a switching tells the state after it.
-    fn after_switching(&self, runner: &Runner, recorder: &mut Recorder) {
-        if recorder.last_time() == Some(runner.time) {
-            recorder.pop();
-            recorder.push(runner.time, &runner.view());
         }
     }
 }

@@ -70,19 +70,6 @@ impl Recorder {
         sieve(&mut self.profiles, self.radii.len().max(1), &keep);
     }
 
-    /// Takes the last row back.
-    pub fn pop(&mut self) {
-        let rows = self.times_s.len().saturating_sub(1);
-        self.times_s.truncate(rows);
-        for column in &mut self.single {
-            column.truncate(rows);
-        }
-        self.faces_k.truncate(rows * self.faces);
-        self.heaters.truncate(rows * self.heater_count);
-        self.probes.truncate(rows * self.probe_count);
-        self.profiles.truncate(rows * self.radii.len());
-    }
-
     /// Adds a state.
     pub fn push(&mut self, time_s: f64, view: &View) {
         self.times_s.push(time_s);

@@ -13,8 +13,13 @@ use crate::section::{Change, ContentState, Section};
 
 /// Newton's residual over the step's tolerance.
 const NEWTON_SHARE: f64 = 0.01;
-/// How near a temperature comes to a switching point when a step lands on it [K].
-const LANDING_K: f64 = 1e-6;
+/// How near a temperature comes to a switching point when a step lands on it, over the step's tolerance: no nearer than
+/// Newton's residual leaves it known.
+const LANDING_TEMPERATURE: f64 = 2.0 * NEWTON_SHARE;
+/// Attempts to land on one trigger before it is taken to fire where the step stands.
+const LANDING_TRIES: usize = 8;
+/// A section that has taken this many steps without getting on is stuck.
+const STUCK_STEPS: usize = 2000;
 /// How near a front comes to a cell's face when a step lands on it, in shares of the cell.
 const LANDING_SHARE: f64 = 1e-5;
 /// How far a front may go back behind the face by which it came, in shares of the cell, before the cell gives it back.
@@ -517,76 +522,78 @@ impl<'a> Runner<'a> {
     }
 
     /// How near a trigger's value must come to zero.
-    fn landing(trigger: Trigger) -> f64 {
+    fn landing(&self, trigger: Trigger) -> f64 {
         match trigger {
             Trigger::Full(_) | Trigger::Emptied(_) => LANDING_SHARE,
-            Trigger::Onset { .. } | Trigger::Thermostat { .. } => LANDING_K,
+            Trigger::Onset { .. } | Trigger::Thermostat { .. } => {
+                LANDING_TEMPERATURE * self.settings.temperature_tolerance_k
+            }
         }
     }
 
-    /// The earliest trigger that fires within the attempted step: its index, its share of the step, its value at the end.
-    fn earliest(&mut self, dt: f64) -> Option<(usize, f64, f64)> {
-        let end_outside = self.controls.outside_k.at(self.time + dt);
-        let mut found: Option<(usize, f64, f64)> = None;
+    /// The earliest trigger that fires within the attempted step: its index, its share of the step, its values at the
+    /// start and the end. The share is located on the dense output of the attempt.
+    fn earliest(&mut self, dt: f64) -> Option<(usize, f64, f64, f64)> {
+        let (start_outside, end_outside) = (self.outside_k(), self.controls.outside_k.at(self.time + dt));
+        let mut found: Option<(usize, f64, f64, f64)> = None;
         for index in 0..self.triggers.len() {
             let trigger = self.triggers[index];
-            let value = self.trigger_value(trigger, &self.x_next, &self.step_ws, end_outside);
-            if value > 0.0 || value.is_nan() {
+            let end = self.trigger_value(trigger, &self.x_next, &self.step_ws, end_outside);
+            if end > 0.0 || end.is_nan() {
                 continue;
             }
-            let aim = -0.5 * Self::landing(trigger);
-            let share = if value >= 2.0 * aim {
-                1.0
-            } else {
-                let start_outside = self.controls.outside_k.at(self.time);
-                let start = self.trigger_value(trigger, &self.x, &self.ws, start_outside).max(0.0);
-                start / (start - value + f64::MIN_POSITIVE)
-            };
-            if found.is_none_or(|(_, least, _)| share < least) {
-                found = Some((index, share, value));
+            let start = self.trigger_value(trigger, &self.x, &self.ws, start_outside).max(0.0);
+            let share = if end >= -self.landing(trigger) { 1.0 } else { start / (start - end) };
+            if found.is_none_or(|(_, least, ..)| share < least) {
+                found = Some((index, share, start, end));
             }
         }
-        let (index, share, value) = found?;
+        let (index, share, start, end) = found?;
         if share >= 1.0 {
             return found;
         }
-        // Locate it on the dense output of the attempt (Illinois' rule on a bracket).
         let trigger = self.triggers[index];
-        let aim = -0.5 * Self::landing(trigger);
-        let time = self.time;
-        let at = |runner: &mut Self, tau: f64| {
-            runner.dense_outside_k = runner.controls.outside_k.at(time + tau * dt);
-            runner.fill_dense(tau, dt, false);
-            let outside_k = runner.dense_outside_k;
-            runner.trigger_value(trigger, &runner.dense_x, &runner.dense_ws, outside_k) - aim
-        };
-        let start_outside = self.outside_k();
-        let mut low = (0.0, self.trigger_value(trigger, &self.x, &self.ws, start_outside).max(0.0) - aim);
-        let mut high = (1.0, value - aim);
+        let close = 0.1 * self.landing(trigger);
+        let mut low = (0.0, start);
+        let mut high = (1.0, end);
         for _ in 0..40 {
+            // Illinois' rule on a bracket.
             let mut tau = low.0 + (high.0 - low.0) * low.1 / (low.1 - high.1);
             if !(tau > low.0 && tau < high.0) {
                 tau = 0.5 * (low.0 + high.0);
             }
-            let g = at(self, tau);
-            if g.abs() < 0.2 * Self::landing(trigger) || high.0 - low.0 < 1e-13 {
-                high = (tau, g);
-                break;
-            }
-            if g > 0.0 {
-                low = (tau, g);
+            self.dense_outside_k = self.controls.outside_k.at(self.time + tau * dt);
+            self.fill_dense(tau, dt, false);
+            let value = self.trigger_value(trigger, &self.dense_x, &self.dense_ws, self.dense_outside_k);
+            if value > 0.0 {
+                low = (tau, value);
                 high.1 *= 0.5;
             } else {
-                high = (tau, g);
+                high = (tau, value);
                 low.1 *= 0.5;
             }
+            if value.abs() < close || high.0 - low.0 < 1e-13 {
+                high.0 = tau;
+                break;
+            }
         }
-        Some((index, high.0, value))
+        Some((index, high.0, start, end))
     }
 
-    /// Fires every trigger that has been reached, until none is left. Gives the thermostat that switched, if one did.
+    /// Fires every trigger that has been reached, until none is left; `landed` fires whatever its value, for the step has
+    /// landed on it as well as it can. Gives the thermostat that switched, if one did.
     pub fn settle_triggers(&mut self) -> Result<Option<(usize, bool)>, MarchError> {
-        let mut switched = None;
+        self.settle_landed(None)
+    }
+
+    fn settle_landed(&mut self, landed: Option<Trigger>) -> Result<Option<(usize, bool)>, MarchError> {
+        let mut switched = match landed {
+            Some(trigger) => self.fire(trigger)?,
+            None => None,
+        };
+        if switched.is_some() {
+            return Ok(switched);
+        }
         for _ in 0..4 * self.h.len() + 16 {
             self.list_triggers();
             let outside = self.outside_k();
@@ -995,6 +1002,7 @@ impl<'a> Runner<'a> {
     ) -> Result<Stop, MarchError> {
         let resolution = |time: f64| 4.0 * f64::EPSILON * time.abs();
         let growth_power = -1.0 / f64::from(self.scheme.order);
+        let mut stuck = (self.time, 0);
         while until - self.time > resolution(until) {
             let remaining = until - self.time;
             let mut dt = self.next_step.min(remaining);
@@ -1004,11 +1012,14 @@ impl<'a> Runner<'a> {
             self.list_triggers();
             self.set_weights();
             let mut attempts = 0;
-            let mut landing_tries = 0;
             let mut wished = f64::INFINITY;
+            // The landings tried: step length and value there of the trigger aimed at.
+            let mut landing: Option<(Trigger, f64, f64)> = None;
+            let mut landing_tries = 0;
+            let mut landed = None;
             loop {
                 attempts += 1;
-                if attempts > 60 || dt < SHORTEST_STEP * self.time_scale || dt <= resolution(self.time) * 0.25 {
+                if attempts > 80 || dt < SHORTEST_STEP * self.time_scale || dt <= resolution(self.time) * 0.25 {
                     return Err(self.failure(dt, attempts));
                 }
                 let Ok(error) = self.attempt(dt) else {
@@ -1022,33 +1033,59 @@ impl<'a> Runner<'a> {
                     dt *= factor.clamp(0.1, 0.8);
                     continue;
                 }
-                let factor = (0.9 * error.max(1e-10).powf(growth_power)).clamp(0.2, 6.0);
                 if landing_tries == 0 {
-                    wished = dt * factor;
+                    wished = dt * (0.9 * error.max(1e-10).powf(growth_power)).clamp(0.2, 6.0);
                 }
-                let Some((index, share, value)) = self.earliest(dt) else { break };
-                let tolerance = 2.0 * Self::landing(self.triggers[index]);
-                if value >= -tolerance || share >= 1.0 || landing_tries >= 8 {
+                // A landing that falls short of its trigger by less than its tolerance has landed.
+                if let Some((trigger, ..)) = landing {
+                    let outside = self.controls.outside_k.at(self.time + dt);
+                    let value = self.trigger_value(trigger, &self.x_next, &self.step_ws, outside);
+                    if value.abs() <= self.landing(trigger) {
+                        landed = Some(trigger);
+                        break;
+                    }
+                }
+                let Some((index, share, start, end)) = self.earliest(dt) else { break };
+                let trigger = self.triggers[index];
+                if share >= 1.0 || landing_tries >= LANDING_TRIES {
+                    landed = Some(trigger);
                     break;
                 }
+                // The first landing trusts dense output; later ones the attempts themselves, by the secant through the
+                // last two (the start stands in for the one before the first).
+                let next = match landing {
+                    Some((same, length, value)) if same == trigger && value != end => {
+                        let guess = dt - end * (dt - length) / (end - value);
+                        if guess > 0.0 && guess < dt { guess } else { dt * start / (start - end) }
+                    }
+                    _ => dt * share,
+                };
+                landing = Some((trigger, dt, end));
                 landing_tries += 1;
                 self.effort.rejected_steps += 1;
-                dt *= share.max(1e-12);
-                // Never stand on the spot: a trigger that fires at once is taken after the shortest step.
-                dt = dt.max(4.0 * resolution(self.time)).max(10.0 * SHORTEST_STEP * self.time_scale);
-                if dt <= 8.0 * resolution(self.time) {
-                    landing_tries = 8;
+                // Never stand on the spot: what fires at once is taken after the shortest step that time can tell.
+                let shortest = 8.0 * resolution(self.time).max(2.0 * SHORTEST_STEP * self.time_scale);
+                if next <= shortest {
+                    landing_tries = LANDING_TRIES;
                 }
+                dt = next.max(shortest).min(dt);
             }
             self.accept(dt);
             if (until - self.time).abs() <= resolution(until) {
                 self.time = until;
             }
             self.next_step = wished.max(dt);
+            if self.time - stuck.0 > 1e-9 * self.time_scale {
+                stuck = (self.time, 0);
+            }
+            stuck.1 += 1;
+            if stuck.1 > STUCK_STEPS {
+                return Err(self.failure(dt, attempts));
+            }
             if observer(self)? == Flow::Stop {
                 return Ok(Stop::Asked);
             }
-            if let Some((heater, on)) = self.settle_triggers()? {
+            if let Some((heater, on)) = self.settle_landed(landed)? {
                 return Ok(Stop::Switched { heater, on });
             }
         }
