@@ -52,6 +52,10 @@ const PROGRESS_STEPS: usize = 64;
 /// A recording of every step is thinned beyond this many rows.
 const MOST_ROWS: usize = 20_000;
 
+/// A step longer than this share of the time reached is recorded in parts.
+const LONG_STEP_SHARE: f64 = 0.003;
+const STEP_PARTS: u32 = 4;
+
 /// One watched condition.
 struct Watch {
     condition: Condition,
@@ -333,6 +337,13 @@ impl Records {
         if self.steps {
             self.seen += 1;
             if self.seen % self.stride == 0 {
+                // A long step leaves a corner in a curve: show its inside too.
+                if to - from > LONG_STEP_SHARE * to {
+                    for part in 1..STEP_PARTS {
+                        let time = from + (to - from) * f64::from(part) / f64::from(STEP_PARTS);
+                        recorder.push(time, &runner.dense(time));
+                    }
+                }
                 recorder.push(to, &runner.view());
             }
             if recorder.rows() > MOST_ROWS {
