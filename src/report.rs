@@ -187,11 +187,18 @@ fn write_files(into: &Path, meant_for: &Path, findings: &Findings) -> Result<Vec
     Ok(names)
 }
 
-/// stand-in
+/// A time in words, rounded to the safe side: down to a danger, up to a recovery.
 pub(crate) fn duration_words(time_s: f64, danger: bool) -> String {
-    let minutes = if danger { (time_s / 60.0).floor() } else { (time_s / 60.0).ceil() };
-    let (hours, minutes) = ((minutes / 60.0).floor(), minutes % 60.0);
-    if hours == 0.0 { format!("{minutes} min") } else { format!("{hours} h {minutes} min") }
+    let round = |value: f64| if danger { value.floor() } else { value.ceil() };
+    if time_s < 600.0 {
+        return format!("{} s", round(time_s));
+    }
+    let minutes = round(time_s / 60.0);
+    if minutes < 60.0 {
+        format!("{minutes} min")
+    } else {
+        format!("{} h {} min", (minutes / 60.0).floor(), minutes % 60.0)
+    }
 }
 
 #[cfg(test)]
@@ -206,5 +213,13 @@ mod tests {
         assert!(matches!(told(ErrorKind::ReadOnlyFilesystem), ReportError::NotAllowed { .. }));
         assert!(matches!(told(ErrorKind::NotADirectory), ReportError::NotAFolder { .. }));
         assert!(matches!(told(ErrorKind::Interrupted), ReportError::System { .. }));
+    }
+
+    #[test]
+    fn times_are_rounded_to_the_safe_side() {
+        assert_eq!(duration_words(7199.0, true), "1 h 59 min");
+        assert_eq!(duration_words(7141.0, false), "2 h 0 min");
+        assert_eq!(duration_words(45.6, true), "45 s");
+        assert_eq!(duration_words(0.0, true), "0 s");
     }
 }

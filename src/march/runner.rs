@@ -26,6 +26,9 @@ const LANDING_SHARE: f64 = 1e-5;
 const DEAD_BAND: f64 = 1e-3;
 /// A cell counts as all liquid (or all solid) while what is missing is worth this many temperature tolerances.
 const WHOLE_TOLERANCES: f64 = 20.0;
+/// A thermostat that switches this often within this time chatters [s].
+const CHATTER_SWITCHINGS: usize = 200;
+const CHATTER_S: f64 = 100.0;
 /// Shortest step over the time scale of the section.
 const SHORTEST_STEP: f64 = 1e-16;
 
@@ -111,6 +114,8 @@ pub(super) struct Runner<'a> {
     pub last_event: String,
     /// Switchings of each heater's thermostat: (on, off).
     pub switchings: Vec<(usize, usize)>,
+    /// Since when each thermostat's recent switchings are counted [s], and how many there were.
+    recent_switchings: Vec<(f64, usize)>,
     /// Whether any ice has appeared in the content, or was there from the start.
     pub content_has_frozen: bool,
 }
@@ -160,6 +165,7 @@ impl<'a> Runner<'a> {
             effort: Effort { cells, ..Effort::default() },
             last_event: "start".into(),
             switchings: vec![(0, 0); section.heaters.len()],
+            recent_switchings: vec![(0.0, 0); section.heaters.len()],
             content_has_frozen: false,
             h,
             x,
@@ -634,6 +640,23 @@ impl<'a> Runner<'a> {
                     count.1 += 1
                 }
                 let name = &self.section.heaters[heater].name;
+                let recent = &mut self.recent_switchings[heater];
+                if self.time - recent.0 > CHATTER_S || self.time < recent.0 {
+                    *recent = (self.time, 0);
+                }
+                recent.1 += 1;
+                if recent.1 > CHATTER_SWITCHINGS {
+                    return Err(MarchError::NotModelled {
+                        reason: format!(
+                            "around {:.0} s the thermostat of '{name}' switches {CHATTER_SWITCHINGS} times within {:.3} s: its own \
+                             heater throws the place that it senses across the whole differential, as a face without heat \
+                             capacity allows\nhint: let it sense a place that the heater does not sit on, or widen the \
+                             differential",
+                            self.time,
+                            self.time - recent.0
+                        ),
+                    });
+                }
                 self.last_event = format!("{name} {}", if on { "on" } else { "off" });
                 self.transition(|_| {})?;
                 self.shorten_after_jump();
