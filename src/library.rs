@@ -4,8 +4,10 @@
 //! [`Mark`] that says whether it was read there, worked out anew, or recalled. A case may define a material of its own
 //! instead. They are starting values: a maker's data sheet for the material at hand prevails.
 
+mod listing;
 mod materials;
 mod pipes;
 
+pub use listing::{UnknownName, list_json, list_text};
 pub use materials::{Block, BuiltIn, Figure, Freezing, Mark, material, material_names, materials};
 pub use pipes::{CatalogPipe, PipeFault, PipeFaultReason, PipeSize, Schedule, pipe, pipes};

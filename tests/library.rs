@@ -216,3 +216,78 @@ fn a_pipe_that_does_not_exist_brings_what_does() {
         assert!(!fault(text).suggestions.is_empty());
     }
 }
+
+/// The widest line of a text [characters].
+fn widest(text: &str) -> usize {
+    text.lines().map(|line| line.chars().count()).max().unwrap_or(0)
+}
+
+#[test]
+fn the_list_fits_a_terminal_and_leaves_nothing_out() {
+    let text = library::list_text(None).expect("everything");
+    assert!(widest(&text) <= 100, "{} columns", widest(&text));
+    for name in library::material_names() {
+        assert!(text.lines().any(|line| line.starts_with(name)), "{name} is not listed");
+    }
+    for standard in ["ASME B36.10M", "ASME B36.19M", "EN 10220"] {
+        assert!(text.lines().any(|line| line == standard), "{standard} is not listed");
+    }
+    let row = |start: &str| text.lines().find(|line| line.starts_with(start)).expect(start).to_owned();
+    assert_eq!(
+        row("water").split_whitespace().take(8).collect::<Vec<_>>()[1..6],
+        ["0.556-0.677", "0", "to", "100", "1000"]
+    );
+    assert!(row("dry soil").ends_with('*'), "{}", row("dry soil"));
+    assert!(row("PVC").ends_with(|letter: char| letter.is_ascii_digit()), "{}", row("PVC"));
+    // Both parts alone make up the whole.
+    let parts = [library::list_text(Some("materials")).expect("it"), library::list_text(Some("Pipes")).expect("it")];
+    assert_eq!(parts.join("\n"), text);
+}
+
+#[test]
+fn one_material_shows_every_figure_with_its_source() {
+    for built_in in library::materials() {
+        let text = library::list_text(Some(&built_in.spec.name)).expect("a material");
+        assert!(widest(&text) <= 100, "{text}");
+        let joined = text.split_whitespace().collect::<Vec<_>>().join(" ");
+        for (_, source, mark) in built_in.sources() {
+            let wanted = if mark == Mark::FromMemory { format!("{source} (from memory)") } else { source.to_owned() };
+            assert!(joined.contains(&wanted), "{wanted} is missing:\n{text}");
+        }
+        for &(degc, value) in built_in.conductivity.iter().flat_map(|block| &block.rows) {
+            assert!(joined.contains(&format!("{degc} degC {value}")), "{degc} degC is missing:\n{text}");
+        }
+    }
+    assert!(library::list_text(Some("lye 50 %")).expect("lye").contains("latent heat: none; freezing is not modelled"));
+}
+
+#[test]
+fn groups_sizes_and_unknown_names_are_told_apart() {
+    let soils = library::list_text(Some("soil")).expect("a group");
+    assert!(soils.contains("wet soil") && !soils.contains("mineral wool"));
+    let of_size = library::list_text(Some("DN 80")).expect("a size");
+    assert!(of_size.contains("schedule 40S") && of_size.contains("normal") && !of_size.contains("DN 100"), "{of_size}");
+    let one = library::list_text(Some("NPS 3, sch 40")).expect("a pipe");
+    assert!(one.contains("5.49") && !one.contains("7.62"), "{one}");
+    let unknown = library::list_text(Some("mineral woll")).expect_err("no such name");
+    assert_eq!(unknown.nearest.as_deref(), Some("mineral wool"));
+    assert!(unknown.to_string().ends_with("hint: did you mean `mineral wool`?"), "{unknown}");
+    assert!(library::list_text(Some("xyzzy")).expect_err("no such name").nearest.is_none());
+}
+
+#[test]
+fn the_list_as_data_says_the_same() {
+    let all = library::list_json(None).expect("everything");
+    assert_eq!(all["materials"].as_array().map(Vec::len), Some(library::materials().len()));
+    assert_eq!(all["pipes"].as_array().map(Vec::len), Some(library::pipes().len()));
+    let water = &library::list_json(Some("water")).expect("water")["materials"][0];
+    assert_eq!(water["conductivity_w_per_m_k"][0]["rows_degC"][3], serde_json::json!([20.0, 0.59801]));
+    assert_eq!(water["freezing"]["latent_heat_kj_per_kg"]["value"], serde_json::json!(333.46));
+    assert_eq!(water["freezing"]["latent_heat_kj_per_kg"]["mark"], "recomputed");
+    assert_eq!(water["density_kg_per_m3"]["at_degC"], serde_json::json!(0.01));
+    let soil = &library::list_json(Some("dry soil")).expect("soil")["materials"][0];
+    assert_eq!(soil["from_memory"], true);
+    assert_eq!(soil["density_kg_per_m3"]["mark"], "from_memory");
+    let pipe = &library::list_json(Some("DN 80, schedule 40")).expect("a pipe")["pipes"][0];
+    assert_eq!(pipe["wall_mm"], serde_json::json!(5.49));
+}

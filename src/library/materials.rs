@@ -55,6 +55,7 @@ pub struct Block {
     /// How they came here.
     pub mark: Mark,
     /// Temperature [degC] and value.
+    #[serde(rename(serialize = "rows_degC"))]
     pub rows: Vec<(f64, f64)>,
 }
 

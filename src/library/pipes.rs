@@ -186,6 +186,13 @@ pub fn pipe(designation: &str) -> Result<PipeSize, PipeFault> {
     Err(PipeFault { reason, suggestions: propose(&nearest) })
 }
 
+/// Pipes of a nominal size (`DN 80`), or the one of a whole designation; none where the name is neither.
+pub(super) fn pipes_named(name: &str) -> Vec<&'static CatalogPipe> {
+    let Some((size, _, schedule)) = read(&name.trim().to_lowercase()) else { return Vec::new() };
+    let is_asked = |pipe: &&CatalogPipe| schedule.is_empty() || pipe.schedule.eq_ignore_ascii_case(&schedule);
+    PIPES.iter().filter(|pipe| pipe.is_of(&size)).filter(is_asked).collect()
+}
+
 fn likeness(known: &str, asked: &str) -> f64 {
     strsim::jaro_winkler(&known.to_lowercase(), asked)
 }
