@@ -1,7 +1,7 @@
 //! The time loop: adaptive implicit steps that land on everything that switches, with fronts, thermostats and an exact
 //! energy account.
 
-use super::chain::{Chain, Joint, Workspace};
+use super::chain::{Chain, Joint, NotConverged, Stage, Workspace};
 use super::controls::Controls;
 use super::front::Front;
 use super::plan::{FrontTreatment, MarchError, Settings};
@@ -288,11 +288,13 @@ impl<'a> Runner<'a> {
         // A front that cannot be solved for keeps the interpolated place: the picture suffers, not the march.
         let _ = self.chain.solve(
             &mut self.dense_x,
-            &self.dense_h,
-            0.0,
-            self.dense_outside_k,
-            &self.weight,
-            NEWTON_SHARE,
+            Stage {
+                known: &self.dense_h,
+                g: 0.0,
+                outside_k: self.dense_outside_k,
+                weight: &self.weight,
+                tolerance: NEWTON_SHARE,
+            },
             &mut self.dense_ws,
         );
     }
@@ -328,7 +330,11 @@ impl<'a> Runner<'a> {
         let outside = self.outside_k();
         self.chain.evaluate(&self.x, outside, &mut self.ws);
         self.set_weights();
-        let solved = self.chain.solve(&mut self.x, &self.h, 0.0, outside, &self.weight, NEWTON_SHARE, &mut self.ws);
+        let solved = self.chain.solve(
+            &mut self.x,
+            Stage { known: &self.h, g: 0.0, outside_k: outside, weight: &self.weight, tolerance: NEWTON_SHARE },
+            &mut self.ws,
+        );
         if solved.is_err() {
             return Err(self.failure(0.0, 1));
         }
@@ -339,7 +345,7 @@ impl<'a> Runner<'a> {
     }
 
     /// One step of length `dt` into `h_next`, `x_next`; gives the error over the tolerance.
-    fn attempt(&mut self, dt: f64) -> Result<f64, ()> {
+    fn attempt(&mut self, dt: f64) -> Result<f64, NotConverged> {
         let scheme = self.scheme;
         let first = self.chain.first;
         let cells = self.h.len();
@@ -363,11 +369,13 @@ impl<'a> Runner<'a> {
             let outside = self.controls.outside_k.at(self.time + scheme.c[stage] * dt);
             self.chain.solve(
                 &mut self.x_next,
-                &self.known,
-                dt * scheme.gamma,
-                outside,
-                &self.weight,
-                NEWTON_SHARE,
+                Stage {
+                    known: &self.known,
+                    g: dt * scheme.gamma,
+                    outside_k: outside,
+                    weight: &self.weight,
+                    tolerance: NEWTON_SHARE,
+                },
                 &mut self.step_ws,
             )?;
             for i in first..cells {
@@ -1060,7 +1068,7 @@ impl<'a> Runner<'a> {
                     dt *= 0.25;
                     continue;
                 };
-                if !(error <= 1.0) {
+                if error > 1.0 || error.is_nan() {
                     self.effort.rejected_steps += 1;
                     let factor = if error.is_finite() { 0.9 * error.powf(growth_power) } else { 0.1 };
                     dt *= factor.clamp(0.1, 0.8);
