@@ -336,7 +336,7 @@ impl Records {
     fn take(&mut self, runner: &mut Runner, recorder: &mut Recorder, from: f64, to: f64) {
         if self.steps {
             self.seen += 1;
-            if self.seen % self.stride == 0 {
+            if self.seen.is_multiple_of(self.stride) {
                 // A long step leaves a corner in a curve: show its inside too.
                 if to - from > LONG_STEP_SHARE * to {
                     for part in 1..STEP_PARTS {

@@ -11,9 +11,11 @@ mod font;
 pub mod json;
 pub mod page;
 pub mod tables;
+pub mod terminal;
 pub mod text;
 
 use crate::answer::Findings;
+use crate::duration::{self, Rounding};
 use std::fs::{self, File};
 use std::io::{self, BufWriter, ErrorKind, Write};
 use std::path::{Path, PathBuf};
@@ -189,16 +191,7 @@ fn write_files(into: &Path, meant_for: &Path, findings: &Findings) -> Result<Vec
 
 /// A time in words, rounded to the safe side: down to a danger, up to a recovery.
 pub(crate) fn duration_words(time_s: f64, danger: bool) -> String {
-    let round = |value: f64| if danger { value.floor() } else { value.ceil() };
-    if time_s < 600.0 {
-        return format!("{} s", round(time_s));
-    }
-    let minutes = round(time_s / 60.0);
-    if minutes < 60.0 {
-        format!("{minutes} min")
-    } else {
-        format!("{} h {} min", (minutes / 60.0).floor(), minutes % 60.0)
-    }
+    duration::words(time_s, if danger { Rounding::Down } else { Rounding::Up })
 }
 
 #[cfg(test)]
@@ -213,13 +206,5 @@ mod tests {
         assert!(matches!(told(ErrorKind::ReadOnlyFilesystem), ReportError::NotAllowed { .. }));
         assert!(matches!(told(ErrorKind::NotADirectory), ReportError::NotAFolder { .. }));
         assert!(matches!(told(ErrorKind::Interrupted), ReportError::System { .. }));
-    }
-
-    #[test]
-    fn times_are_rounded_to_the_safe_side() {
-        assert_eq!(duration_words(7199.0, true), "1 h 59 min");
-        assert_eq!(duration_words(7141.0, false), "2 h 0 min");
-        assert_eq!(duration_words(45.6, true), "45 s");
-        assert_eq!(duration_words(0.0, true), "0 s");
     }
 }

@@ -6,6 +6,7 @@ use stillwarm::case::{self, Loaded};
 use stillwarm::march::{self, CyclePhase, Hold, Plan, Recording, Settings, Trace, steady};
 use stillwarm::section::{Condition, ContentState, Place, Section, Start};
 use stillwarm::series::Series;
+use stillwarm::shipped;
 
 const HOUR_S: f64 = 3600.0;
 
@@ -99,6 +100,19 @@ fn every_case_says_what_it_shows_and_stands_in_the_table() {
 }
 
 #[test]
+fn every_case_is_shipped_with_the_binary() {
+    let mut found: Vec<_> = shipped::names().map(str::to_owned).collect();
+    found.sort();
+    assert_eq!(found, names());
+    for case in shipped::CASES {
+        // What is named in the file must travel with it.
+        assert_eq!(case.series.is_some(), case.text.contains(".csv\""), "{}", case.name);
+        let command = format!("#     stillwarm {} cases/{}.toml", case.verb, case.name);
+        assert!(case.text.lines().any(|line| line.starts_with(&command)), "{command} is not at the head of its case");
+    }
+}
+
+#[test]
 fn every_case_is_read_without_a_word() {
     for name in names() {
         let loaded = load_with(&name, &[]);
@@ -138,7 +152,7 @@ fn heaters_hold_their_targets_with_a_margin() {
     for name in names() {
         let section = section(&name);
         for target in &section.targets {
-            let (factor, _) = steady::factor_that_holds(&section, target.place, target.at_least_k)
+            let (factor, _) = steady::factor_that_holds(&section, target.place, target.at_least_k, 1.0)
                 .unwrap_or_else(|error| panic!("{name}, {}: {error}", target.name));
             assert!((0.05..0.9).contains(&factor), "{name}: {} needs {factor:.2} of the output", target.name);
         }
@@ -216,7 +230,7 @@ fn sulphur_sets_in_hours_and_is_never_overheated_by_its_thermostat() {
     assert!(last - 24.0 > half, "it melts in {} h and was half set in {half} h", last - 24.0);
     // Without its thermostat it would be.
     let outputs: Vec<_> = section.heaters.iter().map(|heater| heater.output_per_line_w_per_m()).collect();
-    let faces = steady::balance(&section, &outputs).expect("a balance").snapshot.faces;
+    let faces = steady::balance(&section, &outputs, 1.0).expect("a balance").snapshot.faces;
     assert!(faces[1].1 > 155.0 + 273.15, "{faces:?}");
 }
 
@@ -239,8 +253,10 @@ fn the_plastic_pipe_softens_on_a_hot_day_without_its_thermostat() {
     let winter = section("plastic-pipe");
     assert!(passed_h(&winter, &run(&winter), "first ice").is_some_and(|hours| hours > 1.0));
     let summer = load_with("plastic-pipe", &["outside.air=\"30 degC\""]).section;
-    let faces =
-        steady::balance(&summer, &[summer.heaters[0].output_per_line_w_per_m()]).expect("a balance").snapshot.faces;
+    let faces = steady::balance(&summer, &[summer.heaters[0].output_per_line_w_per_m()], 1.0)
+        .expect("a balance")
+        .snapshot
+        .faces;
     assert!(faces[1].1 > 60.0 + 273.15, "{faces:?}");
 }
 
@@ -261,7 +277,7 @@ fn the_cylinder_sends_its_heat_the_way_of_least_resistance() {
     let heat_inwards = |face: &str| {
         let section = load_with("heated-cylinder", &[&format!("heater.foil.face=\"{face}\"")]).section;
         let output = section.heaters[0].output_per_line_w_per_m();
-        let found = steady::balance(&section, &[output]).expect("a balance").snapshot;
+        let found = steady::balance(&section, &[output], 1.0).expect("a balance").snapshot;
         (output - found.lost_w_per_m) / output
     };
     let (of_shell, of_tube) = (heat_inwards("shell inside"), heat_inwards("tube outside"));

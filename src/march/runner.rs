@@ -1,7 +1,10 @@
 //! The time loop: adaptive implicit steps that land on everything that switches, with fronts, thermostats and an exact
 //! energy account.
 
-use super::chain::{Chain, Joint, Workspace};
+mod structure;
+mod triggers;
+
+use super::chain::{Chain, Joint, NotConverged, Stage, Workspace};
 use super::controls::Controls;
 use super::front::Front;
 use super::plan::{FrontTreatment, MarchError, Settings};
@@ -9,41 +12,17 @@ use super::scheme::{self, MOST_STAGES, Scheme};
 use super::view::View;
 use crate::history::{Effort, Energy};
 use crate::mesh::Mesh;
-use crate::section::{Change, ContentState, Section};
+use crate::section::Section;
+use triggers::Trigger;
 
 /// Newton's residual over the step's tolerance.
 const NEWTON_SHARE: f64 = 0.01;
-/// How near a temperature comes to a switching point when a step lands on it, over the step's tolerance: no nearer than
-/// Newton's residual leaves it known.
-const LANDING_TEMPERATURE: f64 = 2.0 * NEWTON_SHARE;
 /// Attempts to land on one trigger before it is taken to fire where the step stands.
 const LANDING_TRIES: usize = 8;
 /// A section that has taken this many steps without getting on is stuck.
 const STUCK_STEPS: usize = 2000;
-/// How near a front comes to a cell's face when a step lands on it, in shares of the cell.
-const LANDING_SHARE: f64 = 1e-5;
-/// How far a front may go back behind the face by which it came, in shares of the cell, before the cell gives it back.
-const DEAD_BAND: f64 = 1e-3;
-/// A cell counts as all liquid (or all solid) while what is missing is worth this many temperature tolerances.
-const WHOLE_TOLERANCES: f64 = 20.0;
-/// A thermostat that switches this often within this time chatters [s].
-const CHATTER_SWITCHINGS: usize = 200;
-const CHATTER_S: f64 = 100.0;
 /// Shortest step over the time scale of the section.
 const SHORTEST_STEP: f64 = 1e-16;
-
-/// A condition on which a step must land: positive before, negative after.
-#[derive(Debug, Clone, Copy, PartialEq)]
-enum Trigger {
-    /// The front has crossed its cell: all solid.
-    Full(usize),
-    /// The front has gone back through its cell: all liquid.
-    Emptied(usize),
-    /// The face of a region reaches the freezing point of its liquid, or the melting point of its solid.
-    Onset { cell: usize, outer: bool, freezing: bool },
-    /// A thermostat switches.
-    Thermostat { heater: usize, on: bool },
-}
 
 /// Why [`Runner::advance`] came back.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -288,11 +267,13 @@ impl<'a> Runner<'a> {
         // A front that cannot be solved for keeps the interpolated place: the picture suffers, not the march.
         let _ = self.chain.solve(
             &mut self.dense_x,
-            &self.dense_h,
-            0.0,
-            self.dense_outside_k,
-            &self.weight,
-            NEWTON_SHARE,
+            Stage {
+                known: &self.dense_h,
+                g: 0.0,
+                outside_k: self.dense_outside_k,
+                weight: &self.weight,
+                tolerance: NEWTON_SHARE,
+            },
             &mut self.dense_ws,
         );
     }
@@ -328,7 +309,11 @@ impl<'a> Runner<'a> {
         let outside = self.outside_k();
         self.chain.evaluate(&self.x, outside, &mut self.ws);
         self.set_weights();
-        let solved = self.chain.solve(&mut self.x, &self.h, 0.0, outside, &self.weight, NEWTON_SHARE, &mut self.ws);
+        let solved = self.chain.solve(
+            &mut self.x,
+            Stage { known: &self.h, g: 0.0, outside_k: outside, weight: &self.weight, tolerance: NEWTON_SHARE },
+            &mut self.ws,
+        );
         if solved.is_err() {
             return Err(self.failure(0.0, 1));
         }
@@ -339,7 +324,7 @@ impl<'a> Runner<'a> {
     }
 
     /// One step of length `dt` into `h_next`, `x_next`; gives the error over the tolerance.
-    fn attempt(&mut self, dt: f64) -> Result<f64, ()> {
+    fn attempt(&mut self, dt: f64) -> Result<f64, NotConverged> {
         let scheme = self.scheme;
         let first = self.chain.first;
         let cells = self.h.len();
@@ -363,11 +348,13 @@ impl<'a> Runner<'a> {
             let outside = self.controls.outside_k.at(self.time + scheme.c[stage] * dt);
             self.chain.solve(
                 &mut self.x_next,
-                &self.known,
-                dt * scheme.gamma,
-                outside,
-                &self.weight,
-                NEWTON_SHARE,
+                Stage {
+                    known: &self.known,
+                    g: dt * scheme.gamma,
+                    outside_k: outside,
+                    weight: &self.weight,
+                    tolerance: NEWTON_SHARE,
+                },
                 &mut self.step_ws,
             )?;
             for i in first..cells {
@@ -444,507 +431,6 @@ impl<'a> Runner<'a> {
             newton_iterations: self.ws.iterations + self.step_ws.iterations + self.dense_ws.iterations,
             ..self.effort
         }
-    }
-
-    // ---- switching -----------------------------------------------------------------------------------------------
-
-    /// Conditions that may end the step that starts now.
-    fn list_triggers(&mut self) {
-        self.triggers.clear();
-        for (index, heater) in self.section.heaters.iter().enumerate() {
-            if heater.thermostat.is_some() {
-                self.triggers.push(Trigger::Thermostat { heater: index, on: !self.controls.called[index] });
-            }
-        }
-        if self.settings.front == FrontTreatment::CellPoint {
-            return;
-        }
-        let mut start = 0;
-        for region in 0..self.chain.materials.len() {
-            let end = self.chain.region[start..].partition_point(|&other| other == region) + start;
-            let sharp = self.chain.materials[region].sharp.is_some();
-            let first = start.max(self.chain.first);
-            if sharp && first < end {
-                for cell in first..end {
-                    if self.chain.fronts[cell].is_some() {
-                        self.triggers.push(Trigger::Full(cell));
-                        self.triggers.push(Trigger::Emptied(cell));
-                    }
-                }
-                for (cell, outer) in [(end - 1, true), (first, false)] {
-                    let has_face =
-                        outer || matches!(self.chain.links[cell].joint, Joint::Interface | Joint::FixedInside(_));
-                    if has_face && self.chain.fronts[cell].is_none() {
-                        let share = self.plain_share(cell);
-                        if share == Some(0.0) {
-                            self.triggers.push(Trigger::Onset { cell, outer, freezing: true });
-                        } else if share == Some(1.0) {
-                            self.triggers.push(Trigger::Onset { cell, outer, freezing: false });
-                        }
-                    }
-                }
-            }
-            start = end;
-        }
-    }
-
-    /// Value of a trigger in an evaluated state: positive before it fires, negative after.
-    fn trigger_value(&self, trigger: Trigger, x: &[f64], ws: &Workspace, outside_k: f64) -> f64 {
-        match trigger {
-            Trigger::Full(cell) => {
-                let from_liquid = self.chain.fronts[cell].is_none_or(|front| front.from_liquid);
-                if from_liquid { 1.0 - x[cell] } else { 1.0 + DEAD_BAND - x[cell] }
-            }
-            Trigger::Emptied(cell) => {
-                let from_liquid = self.chain.fronts[cell].is_none_or(|front| front.from_liquid);
-                if from_liquid { x[cell] + DEAD_BAND } else { x[cell] }
-            }
-            Trigger::Onset { cell, outer, freezing } => {
-                let face = if outer {
-                    let link = cell + 1;
-                    self.chain.face_temperatures(link, outside_k, ws).0
-                        - ws.q_left[link] * self.chain.links[link].film_resistance
-                } else {
-                    self.chain.face_temperatures(cell, outside_k, ws).1
-                };
-                let Some(sharp) = self.chain.material(cell).sharp else { return 1.0 };
-                // A cell that changes phase stands at the freezing point, and so may its face: go by what it lacks.
-                if freezing {
-                    let lack = (x[cell] - sharp.enthalpy_liquid) / sharp.capacity_liquid;
-                    (face - sharp.temperature_k).min(lack.max(-1.0))
-                } else {
-                    let lack = (sharp.enthalpy_solid - x[cell]) / sharp.capacity_liquid;
-                    (sharp.temperature_k - face).min(lack.max(-1.0))
-                }
-            }
-            Trigger::Thermostat { heater, on } => {
-                let Some(thermostat) = self.section.heaters[heater].thermostat else { return 1.0 };
-                let view = View {
-                    section: self.section,
-                    mesh: self.mesh,
-                    chain: &self.chain,
-                    controls: &self.controls,
-                    x,
-                    ws,
-                    outside_k,
-                };
-                let sensed = view.temperature(thermostat.senses);
-                if on { sensed - thermostat.on_below_k } else { thermostat.off_above_k - sensed }
-            }
-        }
-    }
-
-    /// How near a trigger's value must come to zero.
-    fn landing(&self, trigger: Trigger) -> f64 {
-        match trigger {
-            Trigger::Full(_) | Trigger::Emptied(_) => LANDING_SHARE,
-            Trigger::Onset { .. } | Trigger::Thermostat { .. } => {
-                LANDING_TEMPERATURE * self.settings.temperature_tolerance_k
-            }
-        }
-    }
-
-    /// The earliest trigger that fires within the attempted step: its index, its share of the step, its values at the
-    /// start and the end. The share is located on the dense output of the attempt.
-    fn earliest(&mut self, dt: f64) -> Option<(usize, f64, f64, f64)> {
-        let (start_outside, end_outside) = (self.outside_k(), self.controls.outside_k.at(self.time + dt));
-        let mut found: Option<(usize, f64, f64, f64)> = None;
-        for index in 0..self.triggers.len() {
-            let trigger = self.triggers[index];
-            let end = self.trigger_value(trigger, &self.x_next, &self.step_ws, end_outside);
-            if end > 0.0 || end.is_nan() {
-                continue;
-            }
-            let start = self.trigger_value(trigger, &self.x, &self.ws, start_outside).max(0.0);
-            let share = if end >= -self.landing(trigger) { 1.0 } else { start / (start - end) };
-            if found.is_none_or(|(_, least, ..)| share < least) {
-                found = Some((index, share, start, end));
-            }
-        }
-        let (index, share, start, end) = found?;
-        if share >= 1.0 {
-            return found;
-        }
-        let trigger = self.triggers[index];
-        let close = 0.1 * self.landing(trigger);
-        let mut low = (0.0, start);
-        let mut high = (1.0, end);
-        for _ in 0..40 {
-            // Illinois' rule on a bracket.
-            let mut tau = low.0 + (high.0 - low.0) * low.1 / (low.1 - high.1);
-            if !(tau > low.0 && tau < high.0) {
-                tau = 0.5 * (low.0 + high.0);
-            }
-            self.dense_outside_k = self.controls.outside_k.at(self.time + tau * dt);
-            self.fill_dense(tau, dt, false);
-            let value = self.trigger_value(trigger, &self.dense_x, &self.dense_ws, self.dense_outside_k);
-            if value > 0.0 {
-                low = (tau, value);
-                high.1 *= 0.5;
-            } else {
-                high = (tau, value);
-                low.1 *= 0.5;
-            }
-            if value.abs() < close || high.0 - low.0 < 1e-13 {
-                high.0 = tau;
-                break;
-            }
-        }
-        Some((index, high.0, start, end))
-    }
-
-    /// Fires every trigger that has been reached, until none is left; `landed` fires whatever its value, for the step has
-    /// landed on it as well as it can. Gives the thermostat that switched, if one did.
-    pub fn settle_triggers(&mut self) -> Result<Option<(usize, bool)>, MarchError> {
-        self.settle_landed(None)
-    }
-
-    fn settle_landed(&mut self, landed: Option<Trigger>) -> Result<Option<(usize, bool)>, MarchError> {
-        let mut switched = match landed {
-            Some(trigger) => self.fire(trigger)?,
-            None => None,
-        };
-        if switched.is_some() {
-            return Ok(switched);
-        }
-        for _ in 0..4 * self.h.len() + 16 {
-            self.list_triggers();
-            let outside = self.outside_k();
-            let reached = self
-                .triggers
-                .iter()
-                .copied()
-                .find(|&trigger| self.trigger_value(trigger, &self.x, &self.ws, outside) <= 0.0);
-            if let Some(trigger) = reached {
-                if let Some(switch) = self.fire(trigger)? {
-                    // A thermostat whose own switching carries its sensor across the other point would switch back at
-                    // once and for ever: one switching a call.
-                    switched = Some(switch);
-                    break;
-                }
-            } else if !self.straighten()? {
-                break;
-            }
-        }
-        Ok(switched)
-    }
-
-    fn fire(&mut self, trigger: Trigger) -> Result<Option<(usize, bool)>, MarchError> {
-        match trigger {
-            Trigger::Thermostat { heater, on } => {
-                self.controls.called[heater] = on;
-                let count = &mut self.switchings[heater];
-                if on {
-                    count.0 += 1
-                } else {
-                    count.1 += 1
-                }
-                let name = &self.section.heaters[heater].name;
-                let recent = &mut self.recent_switchings[heater];
-                if self.time - recent.0 > CHATTER_S || self.time < recent.0 {
-                    *recent = (self.time, 0);
-                }
-                recent.1 += 1;
-                if recent.1 > CHATTER_SWITCHINGS {
-                    return Err(MarchError::NotModelled {
-                        reason: format!(
-                            "around {:.0} s the thermostat of '{name}' switches {CHATTER_SWITCHINGS} times within {:.3} s: its own \
-                             heater throws the place that it senses across the whole differential, as a face without heat \
-                             capacity allows\nhint: let it sense a place that the heater does not sit on, or widen the \
-                             differential",
-                            self.time,
-                            self.time - recent.0
-                        ),
-                    });
-                }
-                self.last_event = format!("{name} {}", if on { "on" } else { "off" });
-                self.transition(|_| {})?;
-                self.shorten_after_jump();
-                return Ok(Some((heater, on)));
-            }
-            Trigger::Full(cell) => {
-                let front = self.chain.fronts[cell].expect("a full cell had a front");
-                self.last_event = "a front reached the next cell".into();
-                self.transition(|runner| {
-                    runner.chain.fronts[cell] = None;
-                    let next = runner.neighbour(cell, !front.solid_outside);
-                    if let Some(next) = next
-                        && runner.plain_share(next) == Some(0.0)
-                    {
-                        let entering = Front { from_liquid: true, offset: 0.0, ..front };
-                        runner.entering.push((next, entering, 0.0));
-                    }
-                })?;
-            }
-            Trigger::Emptied(cell) => {
-                let front = self.chain.fronts[cell].expect("an emptied cell had a front");
-                self.last_event = "a front went back to the cell it came from".into();
-                self.transition(|runner| {
-                    runner.chain.fronts[cell] = None;
-                    let next = runner.neighbour(cell, front.solid_outside);
-                    if let Some(next) = next
-                        && runner.plain_share(next) == Some(1.0)
-                    {
-                        let entering = Front { from_liquid: false, offset: 0.0, ..front };
-                        runner.entering.push((next, entering, 1.0));
-                    }
-                })?;
-            }
-            Trigger::Onset { cell, outer, freezing } => {
-                if freezing && self.mesh.content.contains(&cell) {
-                    self.content_has_frozen = true;
-                }
-                self.last_event = if freezing { "freezing began".into() } else { "melting began".into() };
-                let front = Front { solid_outside: outer == freezing, from_liquid: freezing, offset: 0.0 };
-                self.transition(|runner| {
-                    runner.entering.push((cell, front, if freezing { 0.0 } else { 1.0 }));
-                })?;
-            }
-        }
-        Ok(None)
-    }
-
-    /// The neighbouring cell of the same region, outwards or inwards.
-    fn neighbour(&self, cell: usize, outwards: bool) -> Option<usize> {
-        let next = if outwards { cell + 1 } else { cell.checked_sub(1)? };
-        (next < self.h.len() && self.chain.region[next] == self.chain.region[cell]).then_some(next)
-    }
-
-    /// Frozen share of a cell without a front, from its enthalpy, taken whole where it differs from all liquid or all solid
-    /// by no more than the step's tolerance leaves uncertain.
-    fn plain_share(&self, cell: usize) -> Option<f64> {
-        if self.chain.fronts[cell].is_some() {
-            return None;
-        }
-        let material = self.chain.material(cell);
-        let share = material.frozen_share(self.h[cell] / self.chain.area[cell]);
-        let slack = material.sharp.map_or(0.0, |sharp| {
-            WHOLE_TOLERANCES * self.settings.temperature_tolerance_k * sharp.capacity_liquid / sharp.latent
-        });
-        Some(if share <= slack {
-            0.0
-        } else if share >= 1.0 - slack {
-            1.0
-        } else {
-            share
-        })
-    }
-
-    /// Puts right what no step lands on: a front whose solid side has warmed beyond the freezing point takes the plain
-    /// form; a bare boundary between a solid and a liquid cell gets a front. Says whether anything changed.
-    fn straighten(&mut self) -> Result<bool, MarchError> {
-        if self.settings.front == FrontTreatment::CellPoint {
-            return Ok(false);
-        }
-        for i in self.chain.first..self.h.len() {
-            let Some(front) = self.chain.fronts[i] else { continue };
-            let (inflow, outflow) = (self.ws.q_right[i], self.ws.q_left[i + 1]);
-            // Heat runs from liquid to solid; what a front's parts hold the other way cannot be told apart from noise.
-            let slack = 1e-6 * (inflow.abs() + outflow.abs()).max(1e-6);
-            let reversed = if front.solid_outside { outflow < -slack } else { inflow > slack && i > self.chain.first };
-            let unsolid = if front.solid_outside { outflow } else { -inflow };
-            if reversed && unsolid < 0.0 {
-                self.last_event = "a front was reversed".into();
-                self.transition(|runner| runner.chain.fronts[i] = None)?;
-                return Ok(true);
-            }
-        }
-        for i in self.chain.first + 1..self.h.len() {
-            if self.chain.region[i] != self.chain.region[i - 1] || self.chain.material(i).sharp.is_none() {
-                continue;
-            }
-            let (Some(inner), Some(outer)) = (self.plain_share(i - 1), self.plain_share(i)) else { continue };
-            let (cell, solid_outside) = match (inner == 0.0, inner == 1.0, outer == 0.0, outer == 1.0) {
-                (true, _, _, true) => (i - 1, true),
-                (_, true, true, _) => (i, false),
-                _ => continue,
-            };
-            if matches!(self.chain.links[i].joint, Joint::Within) {
-                let front = Front { solid_outside, from_liquid: true, offset: 0.0 };
-                self.transition(|runner| runner.entering.push((cell, front, 0.0)))?;
-                return Ok(true);
-            }
-        }
-        Ok(false)
-    }
-
-    /// Changes the structure of the chain while every cell keeps its enthalpy: merged liquid is spread over its cells, the
-    /// change is made, liquid is merged again, new fronts get their offsets, and fluxes are solved anew.
-    fn transition(&mut self, change: impl FnOnce(&mut Self)) -> Result<(), MarchError> {
-        self.spread_lump();
-        change(self);
-        self.controls.write(self.section, self.mesh, &mut self.chain);
-        self.controls.write_inner(self.section, self.mesh, &mut self.chain);
-        self.gather_lump();
-        let outside = self.outside_k();
-        for index in 0..self.entering.len() {
-            let (cell, front, u) = self.entering[index];
-            self.chain.fronts[cell] = Some(front);
-            self.x[cell] = u;
-        }
-        self.place_content_joints();
-        for i in self.chain.first..self.h.len() {
-            if self.chain.fronts[i].is_none() {
-                self.x[i] = self.h[i] / self.chain.area[i];
-            }
-        }
-        if !self.entering.is_empty() {
-            self.chain.evaluate(&self.x, outside, &mut self.ws);
-            for index in 0..self.entering.len() {
-                let cell = self.entering[index].0;
-                let offset = self.h[cell] - self.chain.enthalpy(cell, &self.x, &self.ws);
-                if let Some(front) = &mut self.chain.fronts[cell] {
-                    front.offset = offset;
-                }
-            }
-            self.entering.clear();
-        }
-        self.refresh()
-    }
-
-    /// Gives the merged liquid back to its cells.
-    fn spread_lump(&mut self) {
-        let content = self.mesh.content.clone();
-        let lump = self.chain.first;
-        if content.is_empty() || lump >= content.end {
-            self.chain.first = if self.content_takes_part() { 0 } else { content.end };
-            return;
-        }
-        let by_volume = self.h[lump] / self.chain.area[lump];
-        self.chain.split_inner(self.mesh);
-        if lump > 0 {
-            for cell in 0..=lump {
-                self.h[cell] = self.chain.area[cell] * by_volume;
-                self.x[cell] = by_volume;
-            }
-        }
-        for cell in 1..content.end {
-            self.chain.links[cell].joint = Joint::Within;
-        }
-        if !self.content_takes_part() {
-            self.chain.first = content.end;
-        }
-    }
-
-    fn content_takes_part(&self) -> bool {
-        !self.mesh.content.is_empty()
-            && matches!(self.controls.content, ContentState::Still | ContentState::Stirred { .. })
-    }
-
-    /// Merges the stirred liquid inside the front, or all of it where nothing is frozen.
-    fn gather_lump(&mut self) {
-        if !self.content_takes_part() {
-            self.chain.first = self.mesh.content.end;
-            return;
-        }
-        self.chain.first = 0;
-        if !matches!(self.controls.content, ContentState::Stirred { .. }) {
-            return;
-        }
-        let end = self.mesh.content.end;
-        let entering = |cell: usize| self.entering.iter().any(|entry| entry.0 == cell);
-        let liquid = (0..end).take_while(|&cell| self.plain_share(cell) == Some(0.0) && !entering(cell)).count();
-        let closed_by_front = liquid < end
-            && (self.chain.fronts[liquid].is_some_and(|front| front.solid_outside)
-                || self.entering.iter().any(|(cell, front, _)| *cell == liquid && front.solid_outside));
-        if liquid > 0 && (liquid == end || closed_by_front) {
-            let lump = liquid - 1;
-            let sum: f64 = self.h[..=lump].iter().sum();
-            let areas: Vec<f64> = self.mesh.cells[..=lump].iter().map(|cell| cell.area_m2).collect();
-            self.chain.merge_inner(lump, &areas);
-            self.h[lump] = sum;
-        }
-    }
-
-    /// Joints inside the content after merging.
-    fn place_content_joints(&mut self) {
-        if !self.content_takes_part() {
-            return;
-        }
-        let lump = self.chain.first;
-        self.chain.links[lump].joint = Joint::Closed;
-        self.chain.source[lump] = self.chain.source[..=lump].iter().sum();
-        if let ContentState::Stirred { film } = self.controls.content {
-            let merged = lump > 0 || self.mesh.content.len() == 1;
-            let end = self.mesh.content.end;
-            if lump + 1 < end
-                && self.chain.fronts[lump + 1].is_some_and(|front| front.solid_outside)
-                && self.chain.fronts[lump].is_none()
-            {
-                self.chain.links[lump + 1].joint = Joint::Stirred(Chain::stirred_film(film));
-            }
-            // The film lies at the wall only while liquid meets the wall.
-            let meets_wall = merged && lump + 1 == end && self.chain.fronts[lump].is_none();
-            if !meets_wall && !self.section.layers.is_empty() {
-                let contact = self.section.layers[0].contact.clone();
-                self.chain.set_inner_contact(end, &contact, 0.0);
-            }
-        }
-    }
-
-    /// Applies an event of the case now. Gives its name.
-    pub fn apply(&mut self, change: &Change) -> Result<String, MarchError> {
-        let label = if let Change::Content(state) = change {
-            self.exchange_content(*state)?
-        } else {
-            let section = self.section;
-            let label = self.controls.apply(section, change);
-            self.transition(|_| {})?;
-            label
-        };
-        self.last_event = label.clone();
-        self.shorten_after_jump();
-        self.settle_triggers()?;
-        Ok(label)
-    }
-
-    /// The content moves in another way; what is carried in or out with it is entered in the account.
-    fn exchange_content(&mut self, state: ContentState) -> Result<String, MarchError> {
-        let before = self.controls.content;
-        let meshed_before = self.content_takes_part();
-        if meshed_before && self.view().frozen_share() > 0.0 {
-            let remains = matches!(state, ContentState::Still | ContentState::Stirred { .. });
-            if !remains {
-                return Err(MarchError::NotModelled {
-                    reason: format!(
-                        "at {:.0} s the content is to flow, to be drained or to be held while {:.1} % of it is frozen: \
-                         whether that is possible is not modelled",
-                        self.time,
-                        100.0 * self.view().frozen_share()
-                    ),
-                });
-            }
-        }
-        let end = self.mesh.content.end;
-        self.spread_lump();
-        let section = self.section;
-        let label = self.controls.apply(section, &Change::Content(state));
-        let meshed_after = self.content_takes_part();
-        let held: f64 = self.h[..end].iter().sum();
-        if meshed_before && !meshed_after {
-            self.energy.carried_j_per_m -= held;
-        } else if !meshed_before && meshed_after {
-            let arriving_k = match before {
-                ContentState::Flowing { temperature_k, .. } | ContentState::HeldAt { temperature_k } => temperature_k,
-                _ => {
-                    return Err(MarchError::NotModelled {
-                        reason: format!(
-                            "at {:.0} s the empty line is filled, but nothing says how warm: let it flow first",
-                            self.time
-                        ),
-                    });
-                }
-            };
-            for cell in 0..end {
-                self.chain.fronts[cell] = None;
-                self.x[cell] = self.chain.material(cell).enthalpy.at(arriving_k);
-                self.h[cell] = self.mesh.cells[cell].area_m2 * self.x[cell];
-                self.energy.carried_j_per_m += self.h[cell];
-            }
-        }
-        self.chain.first = if meshed_after { 0 } else { end };
-        self.transition(|_| {})?;
-        Ok(label)
     }
 
     /// After a sudden change the old step length means nothing: start from what the fastest cell allows.
@@ -1060,7 +546,7 @@ impl<'a> Runner<'a> {
                     dt *= 0.25;
                     continue;
                 };
-                if !(error <= 1.0) {
+                if error > 1.0 || error.is_nan() {
                     self.effort.rejected_steps += 1;
                     let factor = if error.is_finite() { 0.9 * error.powf(growth_power) } else { 0.1 };
                     dt *= factor.clamp(0.1, 0.8);
