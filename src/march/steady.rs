@@ -29,6 +29,8 @@ pub struct Steady {
     /// Largest heat unaccounted for at any cell or face, by the sparse conductance matrix of the section [W/m]: the state's
     /// own audit.
     pub imbalance_w_per_m: f64,
+    /// Cells of the mesh.
+    pub cells: usize,
     /// Temperatures of the places that a case can name [K].
     places: Vec<(Place, f64)>,
 }
@@ -73,6 +75,7 @@ fn describe(section: &Section, mesh: &Mesh, runner: &Runner) -> Steady {
         history: recorder.finish(),
         resistances: resistances(&view),
         imbalance_w_per_m: Network::new(&view).imbalance(),
+        cells: mesh.cells.len(),
         places: section
             .faces()
             .map(Place::Face)

@@ -50,16 +50,13 @@ pub(super) fn ask(loaded: &Loaded, options: &Options) -> Result<Findings, Questi
         assumptions: told::inputs(loaded, &section),
         cautions: Vec::new(),
         start: solution.snapshot.clone(),
+        // Nothing runs through time; what the conductance matrix cannot account for stands for the residual.
         energy: Energy {
-            // Per second: what comes in, what leaves, and what the conductance matrix cannot account for.
-            supplied_j_per_m: total,
-            lost_j_per_m: solution.snapshot.lost_w_per_m,
-            carried_j_per_m: solution.snapshot.lost_w_per_m - total,
-            stored_j_per_m: 0.0,
             residual_relative: solution.imbalance_w_per_m
                 / total.abs().max(solution.snapshot.lost_w_per_m.abs()).max(1e-3),
+            ..Energy::default()
         },
-        effort: Effort { cells: solution.history.profile_radii_m.len(), ..Effort::default() },
+        effort: Effort { cells: solution.cells, ..Effort::default() },
         history: solution.history.clone(),
         marks: Vec::new(),
         answered: true,
