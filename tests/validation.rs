@@ -2,8 +2,12 @@
 //!
 //! `scripts/validate` runs this with `STILLWARM_WRITE=1`, which also writes the tables, the figures and the index.
 
+#[path = "validation/bessel.rs"]
+mod bessel;
 #[path = "validation/harness.rs"]
 mod harness;
+#[path = "validation/known.rs"]
+mod known;
 #[path = "validation/parts.rs"]
 mod parts;
 #[path = "validation/plot.rs"]
@@ -41,4 +45,9 @@ macro_rules! checks {
 
 checks! {
     steady = "validation/steady.rs";
+    cylinder = "validation/cylinder.rs";
+    composite = "validation/composite.rs";
+    freezing = "validation/freezing.rs";
+    freezing_line = "validation/freezing_line.rs";
+    refreezing = "validation/refreezing.rs";
 }

@@ -123,7 +123,7 @@ pub fn watching(watches: Vec<Condition>) -> Plan {
     Plan {
         until_s: 1e12,
         stop_when_answered: true,
-        stop_when_settled: true,
+        stop_when_settled: false,
         watches,
         cycle_phase: CyclePhase::BeforeOn,
         record: Recording::Ends,
