@@ -1,7 +1,7 @@
 //! From a case file's text to a validated [`Section`].
 //!
 //! ```text
-//!  text --walk--> tree of spans --overrides--> tree --raw--> Case --resolve--> Section
+//!  text --walk--> tree with spans --overrides--> tree --read--> raw::Case --resolve--> Section
 //! ```
 //!
 //! Every fault points at the text that causes it, and all of them come at once.
@@ -9,10 +9,14 @@
 pub mod keys;
 mod overrides;
 pub mod raw;
+mod read;
 mod resolve;
 mod series_file;
 mod text_file;
 mod walk;
+
+#[cfg(test)]
+mod tests;
 
 use crate::faults::{Fault, Faults};
 use crate::section::Section;

@@ -6,6 +6,7 @@
 
 use annotate_snippets::{AnnotationKind, Group, Level, Origin, Renderer, Snippet, normalize_untrusted_str};
 use std::fmt;
+use std::io::IsTerminal;
 use std::ops::Range;
 
 /// A stretch of one of the texts.
@@ -178,6 +179,12 @@ impl Faults {
         // The renderer pads empty lines.
         let trimmed: Vec<_> = shown.join("\n\n").lines().map(|line| line.trim_end().to_owned()).collect();
         trimmed.join("\n")
+    }
+
+    /// All of them as text for standard error: coloured where a person watches and `NO_COLOR` is not set.
+    pub fn render_for_stderr(&self) -> String {
+        let forbids_colour = std::env::var_os("NO_COLOR").is_some_and(|value| !value.is_empty());
+        self.render(std::io::stderr().is_terminal() && !forbids_colour)
     }
 
     fn group<'a>(&'a self, fault: &'a Fault) -> Group<'a> {

@@ -13,18 +13,24 @@
 //! | `start` | the state at 0 h: uniform, reading, held, cycling |
 //! | `controls` | supply, heaters, thermostats, outside, content |
 //! | `view`, `record` | named temperatures of a state, rows of a history |
+//! | `network` | the sparse conductance matrix against which steady states are held |
 //! | `steady` | the steady state and the output that holds a temperature |
 
 mod chain;
 mod controls;
+#[cfg(test)]
+mod fixtures;
 mod front;
 mod link;
+mod network;
 pub mod plan;
 mod record;
 mod runner;
 mod scheme;
 mod start;
 pub mod steady;
+#[cfg(test)]
+mod tests;
 mod view;
 
 pub use plan::*;
@@ -43,11 +49,12 @@ const SETTLED_K: f64 = 1e-3;
 const SETTLED_SHARE: f64 = 1e-5;
 /// Steps between two reports of progress.
 const PROGRESS_STEPS: usize = 64;
-/// Switchings of one heater within this share of the section's time scale that count as chattering.
-const CHATTER_SWITCHINGS: usize = 50;
-const CHATTER_SHARE: f64 = 1e-5;
 /// A recording of every step is thinned beyond this many rows.
 const MOST_ROWS: usize = 20_000;
+
+/// A step longer than this share of the time reached is recorded in parts.
+const LONG_STEP_SHARE: f64 = 0.003;
+const STEP_PARTS: u32 = 4;
 
 /// One watched condition.
 struct Watch {
@@ -159,7 +166,6 @@ pub fn run(
     let mut settled = false;
     let mut cycle: Option<Vec<f64>> = None;
     let mut cycle_repeats = false;
-    let mut recent_switchings = vec![(0.0, 0); section.heaters.len()];
     let end = loop {
         if plan.stop_when_answered && watches.iter().all(|watch| watch.sighting.time_s.is_some()) {
             break End::Answered;
@@ -204,7 +210,7 @@ pub fn run(
             }
             records.take(runner, &mut recorder, from, to);
             steps += 1;
-            if steps % PROGRESS_STEPS == 0 && !progress(to) {
+            if steps % PROGRESS_STEPS == 1 && !progress(to) {
                 stopped = Some(to);
                 return Ok(Flow::Stop);
             }
@@ -231,20 +237,6 @@ pub fn run(
             if powered {
                 let name = &section.heaters[heater].name;
                 marks.push(Mark { time_s: runner.time, label: format!("{name} {}", if on { "on" } else { "off" }) });
-            }
-            let recent = &mut recent_switchings[heater];
-            if runner.time - recent.0 > CHATTER_SHARE * runner.time_scale {
-                *recent = (runner.time, 0);
-            }
-            recent.1 += 1;
-            if recent.1 > CHATTER_SWITCHINGS {
-                return Err(MarchError::NotModelled {
-                    reason: format!(
-                        "at {:.3} s the thermostat of '{}' switches on and off without end: its own heater moves the place it \
-                         senses across its whole differential at once",
-                        runner.time, section.heaters[heater].name
-                    ),
-                });
             }
             if on && settles {
                 let state = runner.temperatures();
@@ -344,7 +336,14 @@ impl Records {
     fn take(&mut self, runner: &mut Runner, recorder: &mut Recorder, from: f64, to: f64) {
         if self.steps {
             self.seen += 1;
-            if self.seen % self.stride == 0 {
+            if self.seen.is_multiple_of(self.stride) {
+                // A long step leaves a corner in a curve: show its inside too.
+                if to - from > LONG_STEP_SHARE * to {
+                    for part in 1..STEP_PARTS {
+                        let time = from + (to - from) * f64::from(part) / f64::from(STEP_PARTS);
+                        recorder.push(time, &runner.dense(time));
+                    }
+                }
                 recorder.push(to, &runner.view());
             }
             if recorder.rows() > MOST_ROWS {

@@ -193,6 +193,17 @@ impl Integral {
         (piece.x0 + 2.0 * dy / (piece.rate + root), 1.0 / root.max(f64::MIN_POSITIVE))
     }
 
+    /// The same with its rate multiplied; jumps of the integral itself with it.
+    fn scaled(&self, factor: f64) -> Self {
+        let scale = |piece: &Piece| Piece {
+            y0: factor * piece.y0,
+            rate: factor * piece.rate,
+            slope: factor * piece.slope,
+            ..*piece
+        };
+        Integral { pieces: self.pieces.iter().map(scale).collect() }
+    }
+
     /// The constant rate, where it is one over all `x`.
     pub fn constant_rate(&self) -> Option<f64> {
         (self.pieces.len() == 1).then(|| self.pieces[0].rate)
@@ -395,6 +406,16 @@ impl Material {
             ..MaterialSpec::default()
         })
         .expect("positive properties")
+    }
+
+    /// The same material conducting `factor` times as much.
+    pub fn conducting(&self, factor: f64) -> Self {
+        let sharp = self.sharp.map(|sharp| Sharp {
+            inertia_solid: sharp.inertia_solid / factor,
+            inertia_liquid: sharp.inertia_liquid / factor,
+            ..sharp
+        });
+        Material { kirchhoff: self.kirchhoff.scaled(factor), sharp, ..self.clone() }
     }
 
     /// Conductivity at a temperature [W/(m K)]; of the liquid at a sharp freezing point.

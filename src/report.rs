@@ -11,9 +11,11 @@ mod font;
 pub mod json;
 pub mod page;
 pub mod tables;
+pub mod terminal;
 pub mod text;
 
 use crate::answer::Findings;
+use crate::duration::{self, Rounding};
 use std::fs::{self, File};
 use std::io::{self, BufWriter, ErrorKind, Write};
 use std::path::{Path, PathBuf};
@@ -187,11 +189,9 @@ fn write_files(into: &Path, meant_for: &Path, findings: &Findings) -> Result<Vec
     Ok(names)
 }
 
-/// stand-in
+/// A time in words, rounded to the safe side: down to a danger, up to a recovery.
 pub(crate) fn duration_words(time_s: f64, danger: bool) -> String {
-    let minutes = if danger { (time_s / 60.0).floor() } else { (time_s / 60.0).ceil() };
-    let (hours, minutes) = ((minutes / 60.0).floor(), minutes % 60.0);
-    if hours == 0.0 { format!("{minutes} min") } else { format!("{hours} h {minutes} min") }
+    duration::words(time_s, if danger { Rounding::Down } else { Rounding::Up })
 }
 
 #[cfg(test)]

@@ -301,7 +301,8 @@ impl QuantityFault {
             }
             Reason::UnknownUnit(_) => self.nearest().map(|nearest| format!("did you mean `{nearest}`?")),
             Reason::UnitOfNumber(_) => Some(format!("write the number alone, as in {example}")),
-            Reason::TooLarge | Reason::OtherKind(..) => None,
+            Reason::OtherKind(..) => Some(format!("as in \"{example}\"")),
+            Reason::TooLarge => None,
         }
     }
 }

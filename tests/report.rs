@@ -27,7 +27,8 @@ fn all() -> Vec<(&'static str, Findings)> {
 #[ignore = "for people who want to look: writes target/look"]
 fn look() {
     let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("target/look");
-    for (name, findings) in all() {
+    let solved = [("solved", fixture::solved(None)), ("solved-back", fixture::solved(Some(36.0 * HOUR)))];
+    for (name, findings) in all().into_iter().chain(solved) {
         report::write_folder(&folder.join(name), &findings).unwrap();
     }
 }

@@ -52,6 +52,8 @@ pub(super) fn resolve(
     let heaters: Vec<_> =
         case.heaters.iter().zip(seats).map(|(raw, seat)| heater(raw, seat, &places, faults)).collect();
 
+    report_stream(case, &states, &heaters, faults);
+
     let outside = case.outside.as_ref().and_then(|raw| outside(raw, files, faults));
     let start = start(case, &places, &states, faults);
     let events = events(case, files, faults);
@@ -62,6 +64,9 @@ pub(super) fn resolve(
     against_thermostats(case, &heaters, &targets, &limits, faults);
     let run = run(&case.run, faults);
     report_late_events(case, &run, faults);
+    if let (Some(raw), Some(outside), Some(events)) = (&case.outside, &outside, &events) {
+        report_short_series(raw, outside, events, case.run.until, faults);
+    }
 
     let section = Section {
         title: case.title.as_ref().map_or(default_title, |title| title.value.clone()),
@@ -275,6 +280,31 @@ fn probe(
     let name = raw.name.as_ref()?;
     places.add(name, radius.map(|radius| Place::Radius(radius.value_si)), faults);
     Some(Probe { name: name.value.clone(), radius_m: radius?.value_si })
+}
+
+/// Warns of what has no effect on a content that does nothing but flow.
+fn report_stream(case: &Case, states: &[(f64, Located<raw::State>)], heaters: &[Option<Heater>], faults: &mut Faults) {
+    let is_stream = |(_, state): &(f64, Located<raw::State>)| matches!(state.value, raw::State::Flowing(..));
+    let Some((_, stream)) = states.first().filter(|_| states.iter().all(is_stream)) else { return };
+    for (raw, heater) in case.heaters.iter().zip(heaters) {
+        if let (Some(through), Some(Seat::Content)) = (&raw.through, heater.as_ref().map(|heater| heater.seat)) {
+            faults.push(
+                Fault::warning(through.span, "this heater warms nothing: the stream's temperature is given")
+                    .label("carried off by the stream")
+                    .also(stream.span, "flows from first to last"),
+            );
+        }
+    }
+    for limit in &case.limits {
+        if let Some(raw::Condition::Frozen(share) | raw::Condition::Thawed(share)) = &limit.condition {
+            faults.push(
+                Fault::warning(share.span, "a stream does not freeze in this model: its temperature is given")
+                    .label("not reached")
+                    .also(stream.span, "flows from first to last")
+                    .help("let the flow stop by an [[event]] with content = \"still\""),
+            );
+        }
+    }
 }
 
 fn course(raw: &Course, files: &mut SeriesFiles<'_>, faults: &mut Faults) -> Option<Series> {
@@ -579,6 +609,25 @@ fn report_late_events(case: &Case, run: &Run, faults: &mut Faults) {
                 .also(until.span, "the run ends here"),
         );
     }
+}
+
+/// Warns of a series that ends before the run, unless another temperature has taken its place by then.
+fn report_short_series(
+    raw: &raw::Outside,
+    outside: &Outside,
+    events: &[Event],
+    until: Option<Quantity>,
+    faults: &mut Faults,
+) {
+    let (Some(until), Some(Course::Series(file))) = (until, raw.air.as_ref().or(raw.held_at.as_ref())) else { return };
+    let replaced = events.iter().find(|event| matches!(event.change, Change::OutsideTemperature(_)));
+    let needed_s = replaced.map_or(until.value_si, |event| event.time_s.min(until.value_si));
+    let Some(ends_s) = outside.temperature_k.ends_s().filter(|&ends_s| ends_s < needed_s) else { return };
+    faults.push(
+        Fault::warning(until.span, "the series ends before the run: the run stops with it")
+            .label("not reached")
+            .also(file.file.span, format!("ends at {} h", (ends_s / 36.0).round() / 100.0)),
+    );
 }
 
 /// Warns of tables of properties that the case's stated temperatures leave.

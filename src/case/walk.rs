@@ -152,10 +152,12 @@ impl<'a> Fields<'a> {
     /// Opens a table: refuses what is none, and every key that `table` does not hold.
     pub fn open(node: &'a Node, table: &'static Table, faults: &mut Faults) -> Option<Self> {
         let Value::Table(entries) = &node.value else {
+            let is_headed = matches!(node.value, Value::Array(_)) && table.title.starts_with('[');
             faults.push(
                 Fault::error(node.span, format!("{} is a table, not {}", table.title, node.what()))
                     .label("no table")
-                    .note(format!("its keys: {}", table.modelled())),
+                    .note(format!("its keys: {}", table.modelled()))
+                    .help_if(is_headed.then(|| format!("there is one only: head it by {}", table.title))),
             );
             return None;
         };

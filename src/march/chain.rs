@@ -129,6 +129,25 @@ impl Workspace {
     }
 }
 
+/// What one implicit stage asks of Newton.
+#[derive(Clone, Copy)]
+pub(super) struct Stage<'a> {
+    /// Known part of every cell's enthalpy [J/m].
+    pub known: &'a [f64],
+    /// The stage's share of the step [s].
+    pub g: f64,
+    /// Temperature of the outside [K].
+    pub outside_k: f64,
+    /// One over each cell's tolerance [m/J].
+    pub weight: &'a [f64],
+    /// Largest residual over the cell's tolerance.
+    pub tolerance: f64,
+}
+
+/// Newton's iteration did not settle.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub(super) struct NotConverged;
+
 impl Chain {
     /// Builds the chain of a mesh: geometry and contacts; content, heaters and outside are set by the controls.
     pub fn new(section: &Section, mesh: &Mesh) -> Self {
@@ -180,6 +199,16 @@ impl Chain {
 
     pub fn cells(&self) -> usize {
         self.region.len()
+    }
+
+    /// ln ratio from a cell's point to its outer face over 2 pi [-].
+    pub fn lambda_outer(&self, cell: usize) -> f64 {
+        self.lambda_out[cell]
+    }
+
+    /// ln ratio from a cell's inner face to its point over 2 pi [-].
+    pub fn lambda_inner(&self, cell: usize) -> f64 {
+        self.lambda_in[cell]
     }
 
     pub fn material(&self, cell: usize) -> &Material {
@@ -404,17 +433,9 @@ impl Chain {
     }
 
     /// Solves `H(x) - known - g F(x) = 0` for `x` by Newton's method with the exact Jacobian; on success the workspace
-    /// holds the evaluation at the solution. `weight` is one over each cell's tolerance [m/J].
-    pub fn solve(
-        &self,
-        x: &mut [f64],
-        known: &[f64],
-        g: f64,
-        outside_k: f64,
-        weight: &[f64],
-        tolerance: f64,
-        ws: &mut Workspace,
-    ) -> Result<(), ()> {
+    /// holds the evaluation at the solution.
+    pub fn solve(&self, x: &mut [f64], stage: Stage, ws: &mut Workspace) -> Result<(), NotConverged> {
+        let Stage { known, g, outside_k, weight, tolerance } = stage;
         const MOST_ITERATIONS: usize = 14;
         let (first, cells) = (self.first, self.cells());
         for round in 0..=MOST_ITERATIONS {
@@ -428,7 +449,7 @@ impl Chain {
                 ws.diagonal[i] = own - g * (ws.dq_by_right[i] - ws.dq_by_left[i + 1]);
                 ws.above[i] = right + g * ws.dq_by_right[i + 1];
                 let size = (residual * weight[i]).abs();
-                if !(size <= worst.1) {
+                if size > worst.1 || size.is_nan() {
                     worst = (i, size);
                 }
             }
@@ -437,7 +458,7 @@ impl Chain {
                 return Ok(());
             }
             if round == MOST_ITERATIONS || !worst.1.is_finite() {
-                return Err(());
+                return Err(NotConverged);
             }
             ws.iterations += 1;
             self.eliminate(ws);
@@ -450,7 +471,7 @@ impl Chain {
                 }
             }
         }
-        Err(())
+        Err(NotConverged)
     }
 
     /// Thomas elimination of the tridiagonal system; `delta` becomes the Newton change.

@@ -120,8 +120,8 @@ mod tests {
             for inner in [0.0, 0.03_f64] {
                 let at = |u: f64| cut(solid_outside, u, inner * inner, 0.036 * 0.036);
                 let (low, middle, high) = (at(0.4 - 1e-6), at(0.4), at(0.4 + 1e-6));
-                let pairs: [fn(&Cut) -> (f64, f64); 5] =
-                    [|c| c.lambda_in, |c| c.lambda_out, |c| c.j_in, |c| c.j_out, |c| c.radius];
+                type Pair = fn(&Cut) -> (f64, f64);
+                let pairs: [Pair; 5] = [|c| c.lambda_in, |c| c.lambda_out, |c| c.j_in, |c| c.j_out, |c| c.radius];
                 for pair in pairs {
                     let difference = (pair(&high).0 - pair(&low).0) / 2e-6;
                     assert!((difference - pair(&middle).1).abs() <= 1e-6 * difference.abs().max(1e-9));

@@ -51,7 +51,7 @@ impl Recorder {
     /// Drops every second row but the first and the last.
     pub fn thin(&mut self) {
         let rows = self.rows();
-        let keep = |row: usize| row % 2 == 0 || row + 1 == rows;
+        let keep = |row: usize| row.is_multiple_of(2) || row + 1 == rows;
         fn sieve(values: &mut Vec<f64>, width: usize, keep: &dyn Fn(usize) -> bool) {
             let mut index = 0;
             values.retain(|_| {

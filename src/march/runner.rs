@@ -1,7 +1,7 @@
 //! The time loop: adaptive implicit steps that land on everything that switches, with fronts, thermostats and an exact
 //! energy account.
 
-use super::chain::{Chain, Joint, Workspace};
+use super::chain::{Chain, Joint, NotConverged, Stage, Workspace};
 use super::controls::Controls;
 use super::front::Front;
 use super::plan::{FrontTreatment, MarchError, Settings};
@@ -26,6 +26,9 @@ const LANDING_SHARE: f64 = 1e-5;
 const DEAD_BAND: f64 = 1e-3;
 /// A cell counts as all liquid (or all solid) while what is missing is worth this many temperature tolerances.
 const WHOLE_TOLERANCES: f64 = 20.0;
+/// A thermostat that switches this often within this time chatters [s].
+const CHATTER_SWITCHINGS: usize = 200;
+const CHATTER_S: f64 = 100.0;
 /// Shortest step over the time scale of the section.
 const SHORTEST_STEP: f64 = 1e-16;
 
@@ -111,6 +114,8 @@ pub(super) struct Runner<'a> {
     pub last_event: String,
     /// Switchings of each heater's thermostat: (on, off).
     pub switchings: Vec<(usize, usize)>,
+    /// Since when each thermostat's recent switchings are counted [s], and how many there were.
+    recent_switchings: Vec<(f64, usize)>,
     /// Whether any ice has appeared in the content, or was there from the start.
     pub content_has_frozen: bool,
 }
@@ -160,6 +165,7 @@ impl<'a> Runner<'a> {
             effort: Effort { cells, ..Effort::default() },
             last_event: "start".into(),
             switchings: vec![(0, 0); section.heaters.len()],
+            recent_switchings: vec![(0.0, 0); section.heaters.len()],
             content_has_frozen: false,
             h,
             x,
@@ -282,11 +288,13 @@ impl<'a> Runner<'a> {
         // A front that cannot be solved for keeps the interpolated place: the picture suffers, not the march.
         let _ = self.chain.solve(
             &mut self.dense_x,
-            &self.dense_h,
-            0.0,
-            self.dense_outside_k,
-            &self.weight,
-            NEWTON_SHARE,
+            Stage {
+                known: &self.dense_h,
+                g: 0.0,
+                outside_k: self.dense_outside_k,
+                weight: &self.weight,
+                tolerance: NEWTON_SHARE,
+            },
             &mut self.dense_ws,
         );
     }
@@ -322,7 +330,11 @@ impl<'a> Runner<'a> {
         let outside = self.outside_k();
         self.chain.evaluate(&self.x, outside, &mut self.ws);
         self.set_weights();
-        let solved = self.chain.solve(&mut self.x, &self.h, 0.0, outside, &self.weight, NEWTON_SHARE, &mut self.ws);
+        let solved = self.chain.solve(
+            &mut self.x,
+            Stage { known: &self.h, g: 0.0, outside_k: outside, weight: &self.weight, tolerance: NEWTON_SHARE },
+            &mut self.ws,
+        );
         if solved.is_err() {
             return Err(self.failure(0.0, 1));
         }
@@ -333,7 +345,7 @@ impl<'a> Runner<'a> {
     }
 
     /// One step of length `dt` into `h_next`, `x_next`; gives the error over the tolerance.
-    fn attempt(&mut self, dt: f64) -> Result<f64, ()> {
+    fn attempt(&mut self, dt: f64) -> Result<f64, NotConverged> {
         let scheme = self.scheme;
         let first = self.chain.first;
         let cells = self.h.len();
@@ -357,11 +369,13 @@ impl<'a> Runner<'a> {
             let outside = self.controls.outside_k.at(self.time + scheme.c[stage] * dt);
             self.chain.solve(
                 &mut self.x_next,
-                &self.known,
-                dt * scheme.gamma,
-                outside,
-                &self.weight,
-                NEWTON_SHARE,
+                Stage {
+                    known: &self.known,
+                    g: dt * scheme.gamma,
+                    outside_k: outside,
+                    weight: &self.weight,
+                    tolerance: NEWTON_SHARE,
+                },
                 &mut self.step_ws,
             )?;
             for i in first..cells {
@@ -634,6 +648,23 @@ impl<'a> Runner<'a> {
                     count.1 += 1
                 }
                 let name = &self.section.heaters[heater].name;
+                let recent = &mut self.recent_switchings[heater];
+                if self.time - recent.0 > CHATTER_S || self.time < recent.0 {
+                    *recent = (self.time, 0);
+                }
+                recent.1 += 1;
+                if recent.1 > CHATTER_SWITCHINGS {
+                    return Err(MarchError::NotModelled {
+                        reason: format!(
+                            "around {:.0} s the thermostat of '{name}' switches {CHATTER_SWITCHINGS} times within {:.3} s: its own \
+                             heater throws the place that it senses across the whole differential, as a face without heat \
+                             capacity allows\nhint: let it sense a place that the heater does not sit on, or widen the \
+                             differential",
+                            self.time,
+                            self.time - recent.0
+                        ),
+                    });
+                }
                 self.last_event = format!("{name} {}", if on { "on" } else { "off" });
                 self.transition(|_| {})?;
                 self.shorten_after_jump();
@@ -1037,7 +1068,7 @@ impl<'a> Runner<'a> {
                     dt *= 0.25;
                     continue;
                 };
-                if !(error <= 1.0) {
+                if error > 1.0 || error.is_nan() {
                     self.effort.rejected_steps += 1;
                     let factor = if error.is_finite() { 0.9 * error.powf(growth_power) } else { 0.1 };
                     dt *= factor.clamp(0.1, 0.8);

@@ -5,6 +5,7 @@
 //! fixed temperature leaves one unknown, the heat that it brings.
 
 use super::controls::Controls;
+use super::network::Network;
 use super::plan::{MarchError, Settings};
 use super::record::Recorder;
 use super::runner::Runner;
@@ -25,6 +26,18 @@ pub struct Steady {
     /// worked out from the solution (temperature drop over the heat flow that causes it). A layer that passes no heat is
     /// left out.
     pub resistances: Vec<(String, f64)>,
+    /// Largest heat unaccounted for at any cell or face, by the sparse conductance matrix of the section [W/m]: the state's
+    /// own audit.
+    pub imbalance_w_per_m: f64,
+    /// Temperatures of the places that a case can name [K].
+    places: Vec<(Place, f64)>,
+}
+
+impl Steady {
+    /// Temperature of a face, the centre, the content or a target's place [K]; NaN where the section has none such.
+    pub fn temperature(&self, place: Place) -> f64 {
+        self.places.iter().find(|known| known.0 == place).map_or(f64::NAN, |known| known.1)
+    }
 }
 
 fn prepared<'a>(section: &'a Section, mesh: &'a Mesh, heaters_w_per_m: &[f64]) -> Result<Runner<'a>, MarchError> {
@@ -41,12 +54,12 @@ fn prepared<'a>(section: &'a Section, mesh: &'a Mesh, heaters_w_per_m: &[f64]) -
 }
 
 /// Steady state with the outside's temperature at 0 h and the given output of each heater per metre of **line** [W/m].
-/// Thermostats do not act.
+/// Thermostats do not act. The mesh matters only where heat is spread through a layer; `refinement` multiplies its cells.
 ///
 /// # Errors
 /// [`MarchError::NoSteadyState`] where the iteration does not settle.
-pub fn balance(section: &Section, heaters_w_per_m: &[f64]) -> Result<Steady, MarchError> {
-    let mesh = Mesh::new(section, 1.0, None);
+pub fn balance(section: &Section, heaters_w_per_m: &[f64], refinement: f64) -> Result<Steady, MarchError> {
+    let mesh = Mesh::new(section, refinement, None);
     let runner = prepared(section, &mesh, heaters_w_per_m)?;
     Ok(describe(section, &mesh, &runner))
 }
@@ -55,7 +68,21 @@ fn describe(section: &Section, mesh: &Mesh, runner: &Runner) -> Steady {
     let view = runner.view();
     let mut recorder = Recorder::new(section, mesh);
     recorder.push(0.0, &view);
-    Steady { snapshot: view.snapshot(), history: recorder.finish(), resistances: resistances(&view) }
+    Steady {
+        snapshot: view.snapshot(),
+        history: recorder.finish(),
+        resistances: resistances(&view),
+        imbalance_w_per_m: Network::new(&view).imbalance(),
+        places: section
+            .faces()
+            .map(Place::Face)
+            .chain([Place::Centre, Place::ContentMean, Place::ContentSurface, Place::Air])
+            .chain((0..section.layers.len()).map(Place::LayerMean))
+            .chain(section.targets.iter().map(|target| target.place))
+            .chain(section.probes.iter().map(|probe| Place::Radius(probe.radius_m)))
+            .map(|place| (place, view.temperature(place)))
+            .collect(),
+    }
 }
 
 fn resistances(view: &View) -> Vec<(String, f64)> {
@@ -95,8 +122,13 @@ fn resistances(view: &View) -> Vec<(String, f64)> {
 ///
 /// # Errors
 /// [`MarchError::NoSteadyState`] also where no output of the heaters changes the place's temperature.
-pub fn factor_that_holds(section: &Section, place: Place, temperature_k: f64) -> Result<(f64, Steady), MarchError> {
-    let mesh = Mesh::new(section, 1.0, None);
+pub fn factor_that_holds(
+    section: &Section,
+    place: Place,
+    temperature_k: f64,
+    refinement: f64,
+) -> Result<(f64, Steady), MarchError> {
+    let mesh = Mesh::new(section, refinement, None);
     let full: Vec<f64> = section.heaters.iter().map(|heater| heater.output_per_line_w_per_m()).collect();
     let scaled = |factor: f64| -> Vec<f64> { full.iter().map(|output| factor * output).collect() };
     let mut failed = None;
@@ -121,4 +153,37 @@ pub fn factor_that_holds(section: &Section, place: Place, temperature_k: f64) ->
     })?;
     let runner = prepared(section, &mesh, &scaled(factor))?;
     Ok((factor, describe(section, &mesh, &runner)))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::march::fixtures;
+
+    #[test]
+    fn the_sparse_matrix_finds_nothing_unaccounted_for() {
+        for section in fixtures::sections() {
+            let outputs: Vec<f64> = section.heaters.iter().map(|heater| heater.output_per_line_w_per_m()).collect();
+            let steady = balance(&section, &outputs, 1.0).unwrap();
+            let scale = steady.snapshot.lost_w_per_m.abs().max(outputs.iter().sum());
+            assert!(
+                steady.imbalance_w_per_m < 1e-8 * scale.max(1.0),
+                "{}: {:.1e} W/m of {scale:.1} W/m",
+                section.title,
+                steady.imbalance_w_per_m
+            );
+        }
+    }
+
+    #[test]
+    fn the_sparse_matrix_sees_a_state_that_is_not_steady() {
+        let section = fixtures::composite();
+        let mesh = Mesh::new(&section, 1.0, None);
+        let runner = prepared(&section, &mesh, &[15.0]).unwrap();
+        let mut network = Network::new(&runner.view());
+        assert!(network.imbalance() < 1e-8);
+        let middle = network.temperature.len() / 2;
+        network.temperature[middle] += 1e-3;
+        assert!(network.imbalance() > 1e-6);
+    }
 }

@@ -133,7 +133,7 @@ impl View<'_> {
     }
 
     /// Heat that passes from the wall into the content [W/m].
-    pub fn into_content(&self) -> f64 {
+    pub fn content_inflow(&self) -> f64 {
         match self.controls.content {
             ContentState::Empty => 0.0,
             _ => -self.ws.q_left[self.mesh.content.end],
@@ -232,7 +232,7 @@ impl View<'_> {
             frozen_share: self.frozen_share(),
             heater_w_per_m: self.controls.total_power(),
             lost_w_per_m: self.lost(),
-            into_content_w_per_m: self.into_content(),
+            into_content_w_per_m: self.content_inflow(),
         }
     }
 }

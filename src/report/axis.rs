@@ -71,7 +71,7 @@ pub(crate) fn range(values: impl IntoIterator<Item = f64>) -> Option<(f64, f64)>
 pub struct TimeUnit {
     /// Its sign.
     pub sign: &'static str,
-    /// Its length [s].
+    /// Its length `[s]`.
     pub seconds: f64,
     steps: &'static [f64],
 }
@@ -101,7 +101,7 @@ impl TimeUnit {
         self.steps.iter().copied().find(|&step| step >= least).unwrap_or_else(|| round_step(least))
     }
 
-    /// A time axis from one time to another [s], in this unit.
+    /// A time axis from one time to another `[s]`, in this unit.
     pub fn axis(&self, from_s: f64, to_s: f64, most_ticks: usize) -> Axis {
         let (low, high) = (from_s / self.seconds, to_s / self.seconds);
         let high = if high > low { high } else { low + 1.0 };
@@ -109,7 +109,7 @@ impl TimeUnit {
         Axis::with_step(format!("Time [{}]", self.sign), low, high, step)
     }
 
-    /// Round times from 0 to the one given [s], for captions.
+    /// Round times from 0 to the one given `[s]`, for captions.
     pub fn round_times(&self, to_s: f64) -> Vec<f64> {
         let high = to_s / self.seconds;
         let mut times = vec![0.0];

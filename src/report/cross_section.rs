@@ -8,7 +8,10 @@ use maud::{Markup, html};
 use std::f64::consts::PI;
 
 const WIDTH: f64 = 900.0;
+/// Height, where the names need no more.
 const HEIGHT: f64 = 470.0;
+/// Distance of one name from the next, at the least.
+const NAME_ROW: f64 = 40.0;
 /// Centre of the rings and radius of the outermost surface on the page.
 const CENTRE: (f64, f64) = (225.0, 205.0);
 const OUTERMOST: f64 = 190.0;
@@ -47,15 +50,15 @@ pub fn cross_section(section: &Section) -> Markup {
         .map(|layer| clean(&layer.name))
         .collect();
     let names = names(section, scale);
-    let row = (HEIGHT - 60.0) / names.len().max(1) as f64;
-    let row = row.min(58.0);
-    let first = CENTRE.1 - 0.5 * row * (names.len().max(1) - 1) as f64;
-    let first = first.max(28.0);
+    let row = (360.0 / names.len() as f64).clamp(NAME_ROW, 58.0);
+    let first = (CENTRE.1 - 0.5 * row * (names.len() - 1) as f64).max(28.0);
+    let last = first + row * (names.len() - 1) as f64;
+    let height = HEIGHT.max(last + 2.0 * NAME_ROW);
     let bar_m = round_length(0.45 * outermost_m);
     let bar = bar_m * scale;
     let base = CENTRE.1 + OUTERMOST + 26.0;
     html! {
-        svg class="section" viewBox=(format!("0 0 {WIDTH} {HEIGHT}")) role="img" xmlns="http://www.w3.org/2000/svg"
+        svg class="section" viewBox=(format!("0 0 {WIDTH} {height}")) role="img" xmlns="http://www.w3.org/2000/svg"
             font-family=(super::font::FAMILY) font-size="15" fill="#262626" {
             title { "Cross-section of " (clean(&section.title)) ", to scale" }
             @for (index, layer) in section.layers.iter().enumerate().rev() {
@@ -95,7 +98,7 @@ pub fn cross_section(section: &Section) -> Markup {
             path d=(format!("M{0} {2} v8 h{1} v-8", CENTRE.0 - OUTERMOST, px(bar), base + 18.0)) stroke="#262626" stroke-width="1.6" fill="none" {}
             text x=(px(CENTRE.0 - OUTERMOST + bar + 8.0)) y=(base + 29.0) font-size="13.5" { (millimetres(bar_m)) " mm, to scale" }
             @if !thickened.is_empty() {
-                text x=(NAMES + 4.0) y=(base + 29.0) font-size="13.5" fill="#4A4A4A" {
+                text x=(NAMES + 4.0) y=(px(height - 20.0)) font-size="13.5" fill="#4A4A4A" {
                     (shortened(&format!("drawn thicker than to scale: {}", thickened.join(", ")), 13.5, Weight::Regular, ROOM))
                 }
             }
@@ -232,5 +235,37 @@ mod tests {
         for (most, round) in [(0.045, 0.02), (0.05, 0.05), (0.0019, 0.001), (0.27, 0.2)] {
             assert!((round_length(most) / round - 1.0).abs() < 1e-9, "{most}: {}", round_length(most));
         }
+    }
+
+    #[test]
+    fn many_layers_make_room_for_their_names() {
+        use crate::section::{Contact, Content, ContentState, Layer, Line, Outside, Record, Run, Start};
+        let material = std::sync::Arc::new(crate::material::Material::constant("m", 1.0, 1.0, 1.0));
+        let layers = |count: u32| Section {
+            title: String::new(),
+            line: Line::default(),
+            content: Content { radius_m: 0.01, material: None, state: ContentState::Empty },
+            layers: (0..count)
+                .map(|index| Layer {
+                    name: format!("layer {index}"),
+                    material: material.clone(),
+                    inside_radius_m: 0.01 + 0.001 * f64::from(index),
+                    outside_radius_m: 0.011 + 0.001 * f64::from(index),
+                    contact: Contact::default(),
+                })
+                .collect(),
+            heaters: vec![],
+            outside: Outside { temperature_k: crate::series::Series::Constant(273.15), film: None },
+            start: Start::Hold,
+            events: vec![],
+            targets: vec![],
+            limits: vec![],
+            probes: vec![],
+            run: Run { until_s: None, record: Record::Auto },
+        };
+        let drawing = |count: u32| cross_section(&layers(count)).into_string();
+        assert!(drawing(3).contains(r#"viewBox="0 0 900 470""#));
+        assert!(drawing(14).contains(r#"viewBox="0 0 900 668""#), "{}", &drawing(14)[..120]);
+        assert!(drawing(14).contains("layer 13: m"));
     }
 }

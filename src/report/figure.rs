@@ -17,6 +17,7 @@ pub use profiles::profiles;
 use super::axis::Axis;
 use super::text::label;
 use crate::answer::{Answer, Findings};
+use crate::history::Mark;
 use crate::report::axis::TimeUnit;
 use crate::section::{Condition, Section};
 
@@ -222,13 +223,17 @@ fn time_axis(findings: &Findings) -> (TimeUnit, Axis) {
     (unit, unit.axis(from_s, to_s, 12))
 }
 
-/// How often one thing may happen before its marks would say less than the heaters' panel does.
-const MOST_MARKS_ALIKE: usize = 3;
+/// How often one thing may happen before its marks say no more.
+const MOST_MARKS_ALIKE: usize = 6;
 
-/// Events and switchings on the time axis. Those of one instant share a mark; a switching that goes on and on has none,
-/// nor has a limit passed, which has its dot.
+/// Events on the time axis. Those of one instant share a mark. A heater switched by its thermostat has none, for its output is
+/// drawn, nor has a limit passed, which has its dot.
 fn uprights(findings: &Findings, unit: TimeUnit, axis: &Axis) -> Vec<Upright> {
     let marks = &findings.marks;
+    let switched = |label: &str| {
+        let heater = label.strip_suffix(" on").or(label.strip_suffix(" off"));
+        heater.is_some_and(|name| findings.section.heaters.iter().any(|heater| heater.name == name))
+    };
     let mut uprights: Vec<Upright> = Vec::new();
     for mark in marks {
         let alike = marks.iter().filter(|other| other.label == mark.label).count();
@@ -236,7 +241,7 @@ fn uprights(findings: &Findings, unit: TimeUnit, axis: &Axis) -> Vec<Upright> {
         let is_answer = findings.answers.iter().any(|answer| {
             mark.label.contains(&answer.name) && answer.time_s.is_some_and(|time_s| (time_s - mark.time_s).abs() < 1.0)
         });
-        if alike > MOST_MARKS_ALIKE || is_answer || at < axis.low || at > axis.high {
+        if alike > MOST_MARKS_ALIKE || switched(&mark.label) || is_answer || at < axis.low || at > axis.high {
             continue;
         }
         match uprights.iter_mut().find(|upright| (upright.at - at).abs() < 1e-3 * (axis.high - axis.low)) {
@@ -255,24 +260,27 @@ fn condition_of(section: &Section, answer: &Answer) -> Option<Condition> {
     limit.or(target.map(|target| Condition::Above(target.place, target.at_least_k)))
 }
 
-/// Records at which a quantity differs from the record before.
-fn switchings(values: impl IntoIterator<Item = f64>) -> Vec<usize> {
-    let values: Vec<f64> = values.into_iter().collect();
-    (1..values.len()).filter(|&row| values[row] != values[row - 1]).collect()
+/// When a heater's output jumped between two records [s]: at the mark that lies there, else at the later record.
+fn jump_time(marks: &[Mark], earlier_s: f64, later_s: f64) -> f64 {
+    let within = marks.iter().map(|mark| mark.time_s).find(|&time_s| time_s >= earlier_s && time_s <= later_s);
+    within.unwrap_or(later_s)
 }
 
-/// Doubles the points of a quantity that holds its value until the next record and then jumps.
-fn stepped(points: impl IntoIterator<Item = (f64, f64)>) -> Vec<(f64, f64)> {
-    let mut stepped: Vec<(f64, f64)> = Vec::new();
-    for (x, y) in points {
-        if let Some(&(_, held)) = stepped.last()
-            && held != y
+/// Points `(time, output)` of a heater: its output holds until it jumps. Also the number of jumps.
+fn stepped(marks: &[Mark], times_s: &[f64], outputs: impl IntoIterator<Item = f64>) -> (Vec<(f64, f64)>, usize) {
+    let mut points: Vec<(f64, f64)> = Vec::new();
+    let mut jumps = 0;
+    for (&time_s, output) in times_s.iter().zip(outputs) {
+        if let Some(&(before_s, before)) = points.last()
+            && before != output
         {
-            stepped.push((x, held));
+            let at = jump_time(marks, before_s, time_s);
+            points.extend([(at, before), (at, output)]);
+            jumps += 1;
         }
-        stepped.push((x, y));
+        points.push((time_s, output));
     }
-    stepped
+    (points, jumps)
 }
 
 #[cfg(test)]
@@ -280,8 +288,10 @@ mod tests {
     use super::*;
 
     #[test]
-    fn a_switched_quantity_jumps() {
-        let points = stepped([(0.0, 15.0), (1.0, 15.0), (2.0, 0.0), (3.0, 0.0)]);
-        assert_eq!(points, vec![(0.0, 15.0), (1.0, 15.0), (2.0, 15.0), (2.0, 0.0), (3.0, 0.0)]);
+    fn a_switched_output_jumps_where_it_was_switched() {
+        let marks = [Mark { time_s: 1.2, label: "trace off".into() }];
+        let (points, jumps) = stepped(&marks, &[0.0, 1.0, 2.0, 3.0], [15.0, 15.0, 0.0, 0.0]);
+        assert_eq!(points, vec![(0.0, 15.0), (1.0, 15.0), (1.2, 15.0), (1.2, 0.0), (2.0, 0.0), (3.0, 0.0)]);
+        assert_eq!(jumps, 1);
     }
 }

@@ -510,12 +510,16 @@ fn audit(findings: &Findings) -> Markup {
                 }
             }
             p.small {
-                "Supplied + carried = lost + stored, to a residual of " (format!("{:.1e}", energy.residual_relative))
+                "Supplied + carried = lost + stored, to a residual of " (residual_words(energy.residual_relative))
                 " of the largest gross heat. Effort: " (findings.effort.cells) " cells, " (findings.effort.steps) " steps ("
                 (findings.effort.rejected_steps) " thrown away), " (findings.effort.newton_iterations) " Newton iterations."
             }
         }
     }
+}
+
+fn residual_words(residual: f64) -> String {
+    if residual == 0.0 { "0".into() } else { format!("{residual:.1e}").replace('-', "\u{2212}") }
 }
 
 fn assumptions(findings: &Findings) -> Markup {

@@ -6,6 +6,7 @@ use std::f64::consts::PI;
 use std::sync::Arc;
 use stillwarm::answer::{Answer, Findings, Outcome};
 use stillwarm::history::{Effort, Energy, History, Mark, Snapshot};
+use stillwarm::march::{self, CyclePhase, Plan, Recording, Settings};
 use stillwarm::material::{FreezingSpec, Material, MaterialSpec, Provenance};
 use stillwarm::section::*;
 use stillwarm::series::Series;
@@ -416,4 +417,34 @@ pub fn cycling() -> Findings {
     let time_s = reached.map(|(time_s, _)| *time_s);
     findings.answers = vec![Answer { danger: false, ..answer("keep", time_s, 10.0, "degC", "wall outside") }];
     findings
+}
+
+/// The same line marched by the solver: an outage from the thermostat's cycle with the supply back after so many seconds.
+pub fn solved(supply_back_s: Option<f64>) -> Findings {
+    let mut section = section();
+    section.events.extend(supply_back_s.map(|time_s| Event { time_s, change: Change::Supply(true) }));
+    let plan = Plan {
+        until_s: 96.0 * 3600.0,
+        stop_when_answered: false,
+        stop_when_settled: false,
+        watches: section.limits.iter().map(|limit| limit.condition).collect(),
+        cycle_phase: CyclePhase::BeforeOn,
+        record: Recording::Steps,
+    };
+    let trace = march::run(&section, &plan, &Settings::default(), &mut |_| true).expect("the line can be solved");
+    let mut findings = outage(None);
+    for (answer, sighting) in findings.answers.iter_mut().zip(&trace.sightings) {
+        answer.time_s = sighting.time_s;
+        answer.cautious_time_s = sighting.time_s.map(|time_s| 0.8 * time_s);
+        answer.outcome = if sighting.time_s.is_some() { Outcome::Reached } else { Outcome::RunEnded };
+    }
+    Findings {
+        section,
+        start: trace.start,
+        energy: trace.energy,
+        effort: trace.effort,
+        history: trace.history,
+        marks: trace.marks,
+        ..findings
+    }
 }

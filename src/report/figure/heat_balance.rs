@@ -1,7 +1,8 @@
 //! Where the heat comes from and where it goes, over time.
 
-use super::{Axis, Curve, Dash, Figure, Kind, Look, Panel, palette, switchings, time_axis, uprights};
+use super::{Axis, Curve, Dash, Figure, Kind, Look, Panel, jump_time, palette, time_axis, uprights};
 use crate::answer::Findings;
+use crate::history::Mark;
 use crate::report::axis::range;
 use crate::report::text::clean;
 
@@ -18,13 +19,22 @@ struct Flows {
     stored: f64,
 }
 
+impl Flows {
+    /// Flows of which the stored one makes up the balance.
+    fn balanced(time_s: f64, heaters: f64, carried: f64, lost: f64) -> Self {
+        Flows { time_s, heaters, carried, lost, stored: heaters + carried - lost }
+    }
+}
+
 /// Heat flows over time per metre of line: heater output, carried in by content, lost to the outside, stored.
 pub fn heat_balance(findings: &Findings) -> Figure {
     let (unit, axis) = time_axis(findings);
     let recorded = recorded(findings);
-    let cycles = switchings(recorded.iter().map(|flows| flows.heaters));
-    let averaged = cycles.len() > MOST_SWITCHINGS;
-    let flows = if averaged { cycle_means(&recorded, &cycles) } else { with_jumps(&recorded) };
+    let flows = with_jumps(&recorded, &findings.marks);
+    let jumps: Vec<usize> =
+        (1..flows.len()).filter(|&index| flows[index].heaters != flows[index - 1].heaters).collect();
+    let averaged = jumps.len() > MOST_SWITCHINGS;
+    let flows = if averaged { cycle_means(&flows, &jumps) } else { flows };
 
     let mut curves = Vec::new();
     let mut add = |name: &str, look: Look, value: fn(&Flows) -> f64| {
@@ -81,47 +91,45 @@ fn recorded(findings: &Findings) -> Vec<Flows> {
         .collect()
 }
 
-/// The records, and before each that finds the heaters switched the state just before: output holds until then, and what the
-/// heaters gain is stored.
-fn with_jumps(recorded: &[Flows]) -> Vec<Flows> {
+/// The records, and the states before and after each jump of the heaters: the other flows run straight from record to record,
+/// and what is stored makes up the balance.
+fn with_jumps(recorded: &[Flows], marks: &[Mark]) -> Vec<Flows> {
     let mut flows: Vec<Flows> = Vec::new();
     for &now in recorded {
         if let Some(&before) = flows.last()
             && before.heaters != now.heaters
         {
-            flows.push(Flows { heaters: before.heaters, stored: now.stored - (now.heaters - before.heaters), ..now });
+            let time_s = jump_time(marks, before.time_s, now.time_s);
+            let share = (time_s - before.time_s) / (now.time_s - before.time_s).max(f64::MIN_POSITIVE);
+            let carried = before.carried + share * (now.carried - before.carried);
+            let lost = before.lost + share * (now.lost - before.lost);
+            flows.extend([before.heaters, now.heaters].map(|heaters| Flows::balanced(time_s, heaters, carried, lost)));
         }
         flows.push(now);
     }
     flows
 }
 
-/// The records up to the first switching, then the mean of each whole cycle from one switching to the next of its kind.
-fn cycle_means(recorded: &[Flows], switchings: &[usize]) -> Vec<Flows> {
-    let rises = |row: usize| recorded[row].heaters > recorded[row - 1].heaters;
-    let alike: Vec<usize> = switchings.iter().copied().filter(|&row| rises(row) == rises(switchings[0])).collect();
-    let first = recorded[alike[0]];
-    let before = recorded[alike[0] - 1];
-    let mut flows = recorded[..alike[0]].to_vec();
-    flows.push(Flows { heaters: before.heaters, stored: first.stored - (first.heaters - before.heaters), ..first });
+/// The flows up to the first jump, then the mean of each whole cycle from one jump to the next of its kind.
+fn cycle_means(flows: &[Flows], jumps: &[usize]) -> Vec<Flows> {
+    let rises = |index: usize| flows[index].heaters > flows[index - 1].heaters;
+    let alike: Vec<usize> = jumps.iter().copied().filter(|&index| rises(index) == rises(jumps[0])).collect();
+    let mut means = flows[..alike[0]].to_vec();
     for cycle in alike.windows(2) {
-        let mean = mean(&recorded[cycle[0]..=cycle[1]]);
-        flows.push(Flows { time_s: recorded[cycle[0]].time_s, ..mean });
-        flows.push(Flows { time_s: recorded[cycle[1]].time_s, ..mean });
+        let mean = mean(&flows[cycle[0]..cycle[1]]);
+        means.push(mean);
+        means.push(Flows { time_s: flows[cycle[1]].time_s, ..mean });
     }
-    flows
+    means
 }
 
-/// Mean over time: the heaters hold from record to record, the other flows run straight; what is stored makes up the balance.
-fn mean(recorded: &[Flows]) -> Flows {
-    let span = recorded[recorded.len() - 1].time_s - recorded[0].time_s;
-    let mut mean = Flows { time_s: recorded[0].time_s, heaters: 0.0, carried: 0.0, lost: 0.0, stored: 0.0 };
-    for pair in recorded.windows(2) {
-        let share = (pair[1].time_s - pair[0].time_s) / span;
-        mean.heaters += share * pair[0].heaters;
-        mean.carried += share * 0.5 * (pair[0].carried + pair[1].carried);
-        mean.lost += share * 0.5 * (pair[0].lost + pair[1].lost);
-    }
-    mean.stored = mean.heaters + mean.carried - mean.lost;
-    mean
+/// Mean over time of flows that run straight from one to the next.
+fn mean(flows: &[Flows]) -> Flows {
+    let span = flows[flows.len() - 1].time_s - flows[0].time_s;
+    let of = |value: fn(&Flows) -> f64| {
+        let halves =
+            flows.windows(2).map(|pair| (pair[1].time_s - pair[0].time_s) * (value(&pair[0]) + value(&pair[1])));
+        0.5 * halves.sum::<f64>() / span
+    };
+    Flows::balanced(flows[0].time_s, of(|flows| flows.heaters), of(|flows| flows.carried), of(|flows| flows.lost))
 }

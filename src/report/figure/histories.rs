@@ -1,8 +1,7 @@
 //! Temperatures over time with limits and events, the frozen share beneath, and the heaters where they switch.
 
 use super::{
-    Axis, Curve, Dash, Dot, Figure, Kind, Level, Look, Panel, condition_of, palette, stepped, switchings, time_axis,
-    uprights,
+    Axis, Curve, Dash, Dot, Figure, Kind, Level, Look, Panel, condition_of, palette, stepped, time_axis, uprights,
 };
 use crate::answer::{Answer, Findings};
 use crate::report::axis::range;
@@ -26,7 +25,7 @@ pub fn histories(findings: &Findings) -> Figure {
     let times: Vec<f64> = findings.history.times_s.iter().map(|time_s| time_s / unit.seconds).collect();
     let mut panels = vec![temperatures(findings, &times, unit.seconds)];
     panels.extend(frozen_share(findings, &times, unit.seconds));
-    panels.extend(heaters(findings, &times));
+    panels.extend(heaters(findings, unit.seconds));
     Figure {
         kind: Kind::Histories,
         title: format!("{}: temperatures over time", clean(&findings.section.title)),
@@ -234,8 +233,9 @@ fn frozen_share(findings: &Findings, times: &[f64], unit_s: f64) -> Option<Panel
     Some(Panel { axis, height: 1.4, curves: vec![curve], levels: Vec::new(), dots: dots(findings, unit_s, true) })
 }
 
-fn heaters(findings: &Findings, times: &[f64]) -> Option<Panel> {
+fn heaters(findings: &Findings, unit_s: f64) -> Option<Panel> {
     let (section, history) = (&findings.section, &findings.history);
+    let times_s = history.times_s.as_slice().expect("times lie in one piece");
     let switches =
         history.heaters_w_per_m.columns().into_iter().any(|column| column.iter().any(|&output| output != column[0]));
     if !switches {
@@ -249,11 +249,12 @@ fn heaters(findings: &Findings, times: &[f64]) -> Option<Panel> {
         .zip(history.heaters_w_per_m.columns())
         .zip(LOOKS.iter().cycle())
         .map(|((heater, outputs), &(colour, dash))| {
-            let often = switchings(outputs.iter().copied()).len() > 40;
+            let (points, jumps) = stepped(&findings.marks, times_s, outputs.iter().copied());
+            let width = if jumps > 40 { 0.4 } else { 1.0 };
             Curve {
                 names: vec![clean(&heater.name)],
-                look: Look { filled: true, ..Look::line(colour, dash, if often { 0.4 } else { 1.0 }) },
-                points: stepped(times.iter().copied().zip(outputs.iter().copied())),
+                look: Look { filled: true, ..Look::line(colour, dash, width) },
+                points: points.into_iter().map(|(time_s, output)| (time_s / unit_s, output)).collect(),
             }
         })
         .collect();
