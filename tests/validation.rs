@@ -50,4 +50,5 @@ checks! {
     freezing = "validation/freezing.rs";
     freezing_line = "validation/freezing_line.rs";
     refreezing = "validation/refreezing.rs";
+    round_a_sink = "validation/round_a_sink.rs";
 }

@@ -19,7 +19,7 @@ const LIMIT: f64 = 1e-4;
 const ORDER: f64 = 2.0;
 const ORDER_SHORTFALL: f64 = 0.3;
 /// Tolerance [K] at which time adds nothing to the error of the mesh.
-const TIGHT_K: f64 = 1e-5;
+const TIGHT_K: f64 = 1e-6;
 const REFINEMENTS: [f64; 3] = [1.0, 2.0, 4.0];
 
 /// One case with the range of its temperatures [K].

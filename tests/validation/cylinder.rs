@@ -144,7 +144,7 @@ pub fn known() -> Vec<Known> {
 
 /// Root and coefficient of the first term, read from the late decay of the centre, against the published table.
 fn first_terms() -> Group {
-    let settings = Settings { refinement: 8.0, temperature_tolerance_k: 1e-5, ..Settings::default() };
+    let settings = Settings { refinement: 16.0, temperature_tolerance_k: 1e-6, ..Settings::default() };
     let mut rows = Vec::new();
     for (bi, zeta, c) in PUBLISHED {
         let section = solid(bi);

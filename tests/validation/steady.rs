@@ -41,7 +41,7 @@ pub fn check() -> Check {
 
 fn solve(section: &Section) -> Steady {
     let outputs: Vec<f64> = section.heaters.iter().map(Heater::output_per_line_w_per_m).collect();
-    balance(section, &outputs).unwrap_or_else(|error| panic!("{error}"))
+    balance(section, &outputs, 1.0).unwrap_or_else(|error| panic!("{error}"))
 }
 
 /// Every resistance from the content's surface to the air: contact, layer, contact, layer, ..., film.
