@@ -51,4 +51,9 @@ checks! {
     freezing_line = "validation/freezing_line.rs";
     refreezing = "validation/refreezing.rs";
     round_a_sink = "validation/round_a_sink.rs";
+    lumped = "validation/lumped.rs";
+    cycling = "validation/cycling.rs";
+    order = "validation/order.rs";
+    numerical_error = "validation/numerical_error.rs";
+    front_treatment = "validation/front_treatment.rs";
 }

@@ -32,6 +32,13 @@ pub struct Case {
     times_s: Vec<f64>,
 }
 
+impl Case {
+    /// Names of the compared places, in the order of every time's row.
+    pub fn place_names(&self) -> Vec<String> {
+        self.places.iter().map(|&place| self.known.section.place_name(place)).collect()
+    }
+}
+
 /// The check.
 pub fn check() -> Check {
     let cases = cases();
