@@ -152,7 +152,9 @@ pub fn run(
             watch.before = watch.value(&runner.view());
             watch.sighting.closest_value = watch.measured(watch.before);
             let frozen = condition == Condition::Frozen(0.0) && runner.content_has_frozen;
-            if watch.before <= 0.0 || frozen {
+            // A share falls to its limit only after it has stood above it: what was never frozen does not thaw.
+            let falls = matches!(condition, Condition::Thawed(_));
+            if (watch.before <= 0.0 && !falls) || frozen {
                 watch.sighting.time_s = Some(0.0);
             }
             watch

@@ -4,6 +4,7 @@ use super::plan::{CyclePhase, Hold, MarchError, Settings};
 use super::runner::{Flow, Runner, Stop};
 use crate::mesh::Mesh;
 use crate::section::{ContentState, Place, Section, Start};
+use crate::series::Series;
 
 /// Cycles tried before a thermostat is said not to settle.
 const MOST_CYCLES: usize = 3000;
@@ -197,6 +198,8 @@ fn hold<'a>(
 ) -> Result<(Runner<'a>, Hold), MarchError> {
     let outside = section.outside.temperature_k.at(0.0);
     let mut runner = Runner::new(section, mesh, settings, |_| outside);
+    // A hold settles under the outside of 0 h, however long it takes: the weather waits.
+    runner.controls.outside_k = Series::Constant(outside);
     let thermostats: Vec<_> =
         section.heaters.iter().enumerate().filter_map(|(index, heater)| Some((index, heater.thermostat?))).collect();
     let on_air = |index: &usize| section.heaters[*index].thermostat.is_some_and(|t| t.senses == Place::Air);
@@ -211,6 +214,7 @@ fn hold<'a>(
     }
     let sensing: Vec<_> = thermostats.iter().filter(|(index, _)| !on_air(index)).copied().collect();
     let balance = |runner: &mut Runner<'a>| -> Result<Hold, MarchError> {
+        runner.controls.outside_k = section.outside.temperature_k.clone();
         runner.restart()?;
         Ok(Hold::Balance { heater_w_per_m: runner.controls.total_power() })
     };
@@ -312,6 +316,7 @@ fn hold<'a>(
 }
 
 fn finish(mut runner: Runner<'_>, hold: Hold) -> Result<(Runner<'_>, Hold), MarchError> {
+    runner.controls.outside_k = runner.section.outside.temperature_k.clone();
     runner.restart_without_switching()?;
     Ok((runner, hold))
 }

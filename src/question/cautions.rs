@@ -1,7 +1,7 @@
 //! The cautions that apply to what was found. Each is a condition and a text; none replaces a qualified person.
 
 use crate::answer::Findings;
-use crate::section::{Condition, ContentState};
+use crate::section::Condition;
 
 /// Surface temperature from which burns are warned of [degC]: the usual design limit of metal jackets (common practice).
 const HOT_SURFACE_DEGC: f64 = 60.0;
@@ -54,8 +54,8 @@ const CAUTIONS: &[(Applies, &str)] = &[
     ),
     (
         icy,
-        "Flow may be blocked soon after the first ice: water that has cooled below its freezing point can fill a bore with a web of \
-         under 10 % ice. A frozen share is no measure of passage. Freezing content expands and can burst what holds it.",
+        "Flow may be blocked soon after the first ice: a frozen share is no measure of passage (water that has cooled below its \
+         freezing point can fill a bore with a web of under 10 % ice). Frozen content can burst what holds it.",
     ),
     (
         frozen_at_start,
@@ -63,7 +63,7 @@ const CAUTIONS: &[(Applies, &str)] = &[
          left to a qualified person.",
     ),
     (
-        |found| icy(found) && matches!(found.section.content.state, ContentState::Still),
+        |found| icy(found) && content_is(found, &["water"]),
         "Supercooling is not modelled: real water often begins to freeze later than this and then suddenly.",
     ),
     (

@@ -1,6 +1,6 @@
 //! `steady`: where each face sits, where the heat goes, and the watts that hold each target.
 
-use super::{ERROR_FACTOR, FINER_MESH, Options, QuestionError, cautions, cautious_section, told};
+use super::{ERROR_FACTOR, FINER_MESH, Options, QuestionError, cautions, cautious_section, is_lagging, told};
 use crate::answer::{Answer, Findings, Outcome};
 use crate::case::Loaded;
 use crate::history::{Effort, Energy};
@@ -144,7 +144,7 @@ fn target_answers(
                 if watts > total {
                     text.push_str(", which does not hold it");
                 }
-                if !options.quick {
+                if !options.quick && section.layers.iter().any(is_lagging) {
                     let cautious = held(&cautious_section(&section), refinement)?;
                     text.push_str(&format!(
                         " (cautious: {} W/m, lagging conducting 25 % more)",
@@ -153,9 +153,10 @@ fn target_answers(
                 }
             }
             findings.headline.push(text + ".");
+            // Below zero the place would have to be cooled to sit at the target: no heat is needed.
             findings.answers.push(value_answer(
                 format!("output that holds {}", target.name),
-                watts,
+                watts.max(0.0),
                 error,
                 "W/m",
                 place.clone(),

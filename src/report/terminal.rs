@@ -80,7 +80,7 @@ fn answers(out: &mut String, answers: &[Answer]) {
 /// The answer itself in a few words.
 fn told(answer: &Answer) -> String {
     let time = answer.time_s.map(|time| duration_words(time, answer.danger));
-    let value = answer.value.map(|value| format!("{} {}", figures(value, 4), unit(&answer.unit)));
+    let value = answer.value.map(|value| quantity(value, &answer.unit));
     match (answer.outcome, time) {
         (Outcome::Reached, Some(time)) => match value {
             Some(value) => format!("{time}, {value}"),
@@ -123,18 +123,20 @@ fn error(answer: &Answer) -> String {
         return format!("± {}", error_words(error));
     }
     match (answer.error, answer.closest_error) {
-        (Some(error), _) if answer.value.is_some() => format!("± {} {}", figures(error, 2), unit(&answer.unit)),
+        (Some(error), _) if answer.value.is_some() => format!("± {}", quantity(error, &answer.unit)),
         (_, Some(error)) if answer.unit == "degC" => format!("± {} K", figures(error, 2)),
         (_, Some(error)) => format!("± {} %", figures(100.0 * error, 2)),
         _ => "not asked for".into(),
     }
 }
 
-fn unit(unit: &str) -> &str {
+/// A value with its unit; energies in the unit of the meter.
+fn quantity(value: f64, unit: &str) -> String {
     match unit {
-        "degC" => "°C",
-        "-" => "",
-        other => other,
+        "degC" => format!("{} °C", figures(value, 4)),
+        "J/m" => format!("{} kWh/m", figures(value / 3.6e6, 3)),
+        "-" => format!("{} %", figures(100.0 * value, 3)),
+        other => format!("{} {other}", figures(value, 4)),
     }
 }
 

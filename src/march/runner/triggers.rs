@@ -218,11 +218,10 @@ impl Runner<'_> {
         match trigger {
             Trigger::Thermostat { heater, on } => {
                 self.controls.called[heater] = on;
-                let count = &mut self.switchings[heater];
-                if on {
-                    count.0 += 1
-                } else {
-                    count.1 += 1
+                // A thermostat whose heater has no power asks in vain: nothing is switched.
+                if self.controls.supply && !self.controls.tripped[heater] {
+                    let count = &mut self.switchings[heater];
+                    if on { count.0 += 1 } else { count.1 += 1 }
                 }
                 let name = &self.section.heaters[heater].name;
                 let recent = &mut self.recent_switchings[heater];
