@@ -371,7 +371,6 @@ impl<'a> Runner<'a> {
                 _ => 0.0,
             };
         }
-        let mut worst = 0.0_f64;
         for i in first..cells {
             let (mut change, mut error) = (0.0, 0.0);
             for stage in 0..scheme.stages {
@@ -380,9 +379,9 @@ impl<'a> Runner<'a> {
                 error += (b - scheme.embedded[stage]) * self.stages[stage][i];
             }
             self.h_next[i] = self.h[i] + dt * change;
-            worst = worst.max((dt * error * self.weight[i]).abs());
+            self.known[i] = dt * error;
         }
-        Ok(worst)
+        Ok(self.chain.filtered_error(&self.known, &self.weight, &mut self.step_ws))
     }
 
     /// Takes the step just attempted.
