@@ -9,7 +9,7 @@
 
 use crate::harness::{Check, Class, Group, Listing, Row, number};
 use crate::known::Known;
-use crate::parts::{constant, heater, kelvin, layer, march, recording, section};
+use crate::parts::{constant, heater, kelvin, lagging_share, layer, march, recording, section};
 use crate::plot::{Curve, Plot};
 use std::f64::consts::{PI, TAU};
 use stillwarm::march::{Hold, Recording, Settings};
@@ -53,10 +53,13 @@ fn line(output: f64, lumped: bool) -> Section {
     section
 }
 
-/// Period [s] and duty [-].
+/// Period [s] and duty [-], with the little that wall and lagging still have beside the content.
 fn closed_form(output: f64) -> (f64, f64) {
-    let capacity = RHO_C * PI * BORE_M * BORE_M;
-    let resistance = (LAGGING_M / WALL_M).ln() / (TAU * K_LAGGING) + 1.0 / (TAU * LAGGING_M * FILM);
+    let film = 1.0 / (TAU * LAGGING_M * FILM);
+    let wall = NO_CAPACITY * PI * (WALL_M * WALL_M - BORE_M * BORE_M);
+    let lagging = lagging_share(NO_CAPACITY, WALL_M, LAGGING_M, K_LAGGING, film);
+    let capacity = RHO_C * PI * BORE_M * BORE_M + wall + lagging;
+    let resistance = (LAGGING_M / WALL_M).ln() / (TAU * K_LAGGING) + film;
     let highest = AIR_DEGC + output * resistance;
     let off = capacity * resistance * ((OFF_DEGC - AIR_DEGC) / (ON_DEGC - AIR_DEGC)).ln();
     let on = capacity * resistance * ((highest - ON_DEGC) / (highest - OFF_DEGC)).ln();

@@ -7,7 +7,7 @@
 
 use crate::harness::{Check, Class, Group, Listing, Row};
 use crate::known::{Known, sightings};
-use crate::parts::{Freezing, constant, kelvin, layer, section, watching};
+use crate::parts::{Freezing, constant, kelvin, lagging_share, layer, outside, section, watching};
 use crate::plot::{Curve, Plot};
 use std::f64::consts::{PI, TAU};
 use stillwarm::march::Settings;
@@ -26,6 +26,8 @@ const K_LAGGING: f64 = 0.30 * 0.144_227_889;
 /// 62.4 lb/ft3 and 1 Btu/(lb degF).
 const RHO_C_WATER: f64 = 999.55 * 4186.8;
 const LATENT: f64 = 999.55 * 334e3;
+/// 42 degF [K].
+const START_K: f64 = 273.15 + 10.0 / 1.8;
 /// Share frozen at which ISO 12241 suggests to stop.
 const FROZEN_SHARE: f64 = 0.25;
 /// Capacity of what shall have none [J/(m3 K)] (1e-4 of the water's at most), and conductivity of what shall not resist
@@ -58,18 +60,22 @@ fn line(air_degc: f64, added: Added) -> Section {
     let state = if added.still { ContentState::Still } else { ContentState::Stirred { film: None } };
     let content = Content { radius_m: BORE_M, material: Some(water.material()), state };
     let layers = vec![layer("wall", wall, BORE_M, WALL_M, 0.0), layer("lagging", lagging, WALL_M, LAGGING_M, 0.0)];
-    // 42 degF.
-    section(content, layers, kelvin(air_degc), added.film.then_some(10.0), kelvin((42.0 - 32.0) / 1.8))
+    section(content, layers, kelvin(air_degc), added.film.then_some(10.0), START_K)
 }
 
 fn resistance() -> f64 {
     (LAGGING_M / WALL_M).ln() / (TAU * K_LAGGING)
 }
 
-/// Time to cool from 42 to 32 degF [s].
-fn cooling_s(air_degc: f64) -> f64 {
+/// Time to cool from 42 to 32 degF [s] with a capacity [J/(m K)] beside the water's.
+fn cooling_s(air_degc: f64, beside: f64) -> f64 {
     let start = 10.0 / 1.8;
-    RHO_C_WATER * PI * BORE_M * BORE_M * resistance() * ((start - air_degc) / -air_degc).ln()
+    (RHO_C_WATER * PI * BORE_M * BORE_M + beside) * resistance() * ((start - air_degc) / -air_degc).ln()
+}
+
+/// What the stripped line still has beside its water [J/(m K)].
+fn left_over() -> f64 {
+    NO_CAPACITY * PI * (WALL_M * WALL_M - BORE_M * BORE_M) + lagging_share(NO_CAPACITY, WALL_M, LAGGING_M, K_LAGGING, 0.0)
 }
 
 /// Time to freeze the share [s].
@@ -84,11 +90,15 @@ const AIR: [(f64, f64); 2] = [(-50.0 / 1.8, 1.4), (-12.0 / 1.8, 4.6)];
 pub fn known() -> Vec<Known> {
     let stripped = |&(air, _): &(f64, f64)| Known {
         name: format!("stripped line, air {air:.2} degC"),
-        section: line(air, Added::default()),
+        // Lagging that starts warm throughout would give its little heat to the water.
+        section: Section {
+            start: Start::Reading { place: Place::Face(outside(0)), temperature_k: START_K },
+            ..line(air, Added::default())
+        },
         plan: watching(vec![Condition::Frozen(0.0), Condition::Frozen(FROZEN_SHARE)]),
         expected: vec![
-            ("cooled to freezing".into(), cooling_s(air)),
-            ("a quarter frozen".into(), cooling_s(air) + freezing_s(air)),
+            ("cooled to freezing".into(), cooling_s(air, left_over())),
+            ("a quarter frozen".into(), cooling_s(air, left_over()) + freezing_s(air)),
         ],
         read: sightings(),
     };
@@ -133,10 +143,10 @@ pub fn check() -> Check {
             let trace = crate::parts::march(&line(air, added), &plan, &Settings::default());
             let times: Vec<f64> = trace.sightings.iter().map(|sighting| sighting.time_s.unwrap_or(f64::NAN)).collect();
             let freezing = times[1] - times[0];
-            cells.push(format!("{:.2} h ({:.2})", times[0] / 3600.0, times[0] / cooling_s(air)));
+            cells.push(format!("{:.2} h ({:.2})", times[0] / 3600.0, times[0] / cooling_s(air, 0.0)));
             cells.push(format!("{:.2} h ({:.2})", freezing / 3600.0, freezing / freezing_s(air)));
             if index == 0 {
-                curves[0].push((number as f64, times[0] / cooling_s(air)));
+                curves[0].push((number as f64, times[0] / cooling_s(air, 0.0)));
                 curves[1].push((number as f64, freezing / freezing_s(air)));
             }
         }

@@ -158,3 +158,14 @@ impl Random {
         (self.between(low.ln(), high.ln())).exp()
     }
 }
+
+/// Capacity of lagging between `a` and `b` that counts beside a lump inside it, as if all of it were at the lump's
+/// temperature [J/(m K)]: its steady profile falls as `ln r` to the film, `int rho c (T - T_a) / (T_lump - T_a) dA`.
+pub fn lagging_share(rho_c: f64, a: f64, b: f64, k: f64, film_resistance: f64) -> f64 {
+    use std::f64::consts::{PI, TAU};
+    let ln = (b / a).ln();
+    let resistance = ln / (TAU * k);
+    let part = resistance / (resistance + film_resistance);
+    let falling = PI * ((b * b - a * a) / (2.0 * ln) - a * a);
+    rho_c * (part * falling + (1.0 - part) * PI * (b * b - a * a))
+}

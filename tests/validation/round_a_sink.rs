@@ -27,8 +27,9 @@ const K_LIQUID: f64 = 0.57;
 const RHO_C_SOLID: f64 = 2.1e6;
 const RHO_C_LIQUID: f64 = 4.2e6;
 const LATENT: f64 = 334e6;
-/// The line has a radius: what would fill it delays the front by `pi a^2 rho L / Q`, 2 s of 3 h at worst (2e-4).
-const BORE_M: f64 = 0.2e-3;
+/// The line has a radius: the front is ahead by what would have frozen in it, `pi a^2 rho L / Q`, 0.13 s of 3 h at worst
+/// (1.2e-5).
+const BORE_M: f64 = 0.05e-3;
 /// The water ends: the wave of 10 K has left 5e-4 K there after a day.
 const OUTER_M: f64 = 0.6;
 /// Early times make the mesh fine where the front starts.
@@ -104,14 +105,16 @@ impl Similarity {
     }
 }
 
-/// Radius of the front [m]: the profile inside it, carried on in ln r through its last three points to the freezing point.
+/// Radius of the front [m]: the profile inside it, carried on in ln r through three points to the freezing point. The
+/// cell that the front left last is passed over: it still settles, by about 1e-3 K, which the way to the front would
+/// magnify.
 fn front_m(trace: &Trace, row: usize, point_k: f64, sign: f64) -> f64 {
     let history = &trace.history;
     let inner = history.profile_radii_m.iter().zip(history.profiles_k.row(row));
     // The cut cell itself is at the freezing point.
     let inner: Vec<(f64, f64)> =
         inner.map(|(r, t)| (sign * (t - point_k), r.ln())).take_while(|point| point.0 < -1e-6).collect();
-    let last = &inner[inner.len().saturating_sub(3)..];
+    let last = &inner[inner.len() - 4..inner.len() - 1];
     // ln r as the parabola through three (temperature, ln r), at temperature 0.
     let at_zero = |i: usize| {
         (0..last.len()).filter(|&j| j != i).map(|j| last[j].0 / (last[j].0 - last[i].0)).product::<f64>() * last[i].1
