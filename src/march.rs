@@ -46,7 +46,7 @@ use view::View;
 /// A line has come to rest when what is left of its change is below this [K].
 const SETTLED_K: f64 = 1e-3;
 /// The same for a frozen share.
-const SETTLED_SHARE: f64 = 1e-5;
+const SETTLED_SHARE: f64 = 1e-6;
 /// Steps between two reports of progress.
 const PROGRESS_STEPS: usize = 64;
 /// A recording of every step is thinned beyond this many rows.

@@ -27,13 +27,15 @@ use std::ops::Range;
 struct Grading {
     face_share: f64,
     growth: f64,
+    /// Growth in the content over that in layers: towards the centre line heat gathers from all sides.
+    core: f64,
 }
 
 /// For answers late after a change (hours of an outage): early transients need only their energy right.
-const LATE: Grading = Grading { face_share: 0.25, growth: 0.16 };
+const LATE: Grading = Grading { face_share: 0.25, growth: 0.16, core: 1.0 };
 /// For states asked for while heat is still on its way: at every instant the wave is resolved to about 1e-4 of the
 /// temperature range. Its error goes with the square of both numbers (measured in `validation/`).
-const EARLY: Grading = Grading { face_share: 0.05, growth: 0.04 };
+const EARLY: Grading = Grading { face_share: 0.05, growth: 0.04, core: 0.25 };
 /// A layer is one cell where heat crosses it within this share of the shortest time of interest.
 const THIN_SHARE: f64 = 0.05;
 /// Cells across a layer at least, and along the content's radius at least, unless it is thin.
@@ -177,7 +179,7 @@ impl Mesh {
             } else {
                 let finer = 1.0 + FINER_BY_STEFAN * stefan_number(section, material);
                 let widest = radius / (FEWEST_IN_CONTENT * finer);
-                let growth = grading.growth / finer;
+                let growth = grading.growth * grading.core / finer;
                 let mut dx_face = grading.face_share * (alpha * shortest).sqrt();
                 if material.freezing_k.is_some() {
                     dx_face = dx_face.min(FREEZING_FACE_SHARE * radius / finer.powf(1.5));

@@ -167,7 +167,9 @@ fn a_lumped_line_warms_by_its_exponential() {
     let exact = -(capacity / film) * (1.0 - 10.0 * film / 40.0).ln();
     let answer = &found.answers[0];
     let time = answer.time_s.unwrap();
-    assert!((time / exact - 1.0).abs() < 1e-4, "{time} against {exact}");
+    // The step tolerance is 1e-3 K of the 10 K here: a few seconds of 3 h 29 min, which the answer's own error covers.
+    assert!((time / exact - 1.0).abs() < 1e-3, "{time} against {exact}");
+    assert!((time - exact).abs() <= answer.error_s.unwrap(), "{time} against {exact}: {answer:?}");
     assert!((answer.value.unwrap() - 40.0 * time).abs() < 1e-6);
     assert!(!answer.danger);
 }

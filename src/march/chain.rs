@@ -24,6 +24,9 @@ use std::sync::Arc;
 /// It leaves the liquid within `q / (2 pi s film)` of the freezing point, some 1e-5 K.
 const PERFECT_STIRRING: f64 = 1e6;
 
+/// Round-offs that a cell's net heat gathers.
+const ROUND_OFFS: f64 = 8.0;
+
 /// What joins two neighbouring cells.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub(super) enum Joint {
@@ -488,22 +491,13 @@ impl Chain {
         }
     }
 
-    /// The largest of a step's errors `error` [J/m] over its tolerance, after the last stage's Jacobian has taken away what the
-    /// scheme itself damps: stiff cells report their round-off and their vanished transients otherwise
-    /// (L. F. Shampine's filter; E. Hairer & G. Wanner, Solving ordinary differential equations II, IV.8; from memory).
-    pub fn filtered_error(&self, error: &[f64], weight: &[f64], ws: &mut Workspace) -> f64 {
-        for i in self.first..self.cells() {
-            ws.residual[i] = -error[i];
+    /// Round-off of a cell's net heat at the last evaluation [W/m]: what its own temperature, known to sixteen digits, leaves
+    /// uncertain of the flows to its neighbours. It rules where next to no capacity sits between large conductances.
+    pub fn net_noise(&self, i: usize, x: &[f64], ws: &Workspace) -> f64 {
+        if self.fronts[i].is_some() {
+            return 0.0;
         }
-        self.eliminate(ws);
-        let mut worst = 0.0_f64;
-        for i in self.first..self.cells() {
-            let size = (self.unit_enthalpy(i) * ws.delta[i] * weight[i]).abs();
-            if size > worst || size.is_nan() {
-                worst = size;
-            }
-        }
-        worst
+        ROUND_OFFS * f64::EPSILON * (ws.dq_by_right[i].abs() + ws.dq_by_left[i + 1].abs()) * x[i].abs()
     }
 
     /// Thomas elimination of the tridiagonal system; `delta` becomes the Newton change.

@@ -164,6 +164,9 @@ impl<'a> Runner<'a> {
             sum += (layer.outside_radius_m / layer.inside_radius_m).ln() / (2.0 * std::f64::consts::PI * conductivity)
                 + layer.contact.resistance_m_k_per_w;
         }
+        if let Some(material) = &self.section.content.material {
+            sum += 1.0 / (4.0 * std::f64::consts::PI * material.conductivity(273.15));
+        }
         if let Some(film) = self.section.outside.film {
             sum += Chain::film_resistance(film, self.section.outermost_radius_m());
         }
@@ -264,6 +267,8 @@ impl<'a> Runner<'a> {
                 self.dense_h[i] / self.chain.area[i]
             };
         }
+        // Start from the same guess whatever was asked before: records must not change what is found.
+        self.dense_ws.q_left.copy_from_slice(&self.ws.q_left);
         // A front that cannot be solved for keeps the interpolated place: the picture suffers, not the march.
         let _ = self.chain.solve(
             &mut self.dense_x,
@@ -371,6 +376,7 @@ impl<'a> Runner<'a> {
                 _ => 0.0,
             };
         }
+        let mut worst = 0.0_f64;
         for i in first..cells {
             let (mut change, mut error) = (0.0, 0.0);
             for stage in 0..scheme.stages {
@@ -379,9 +385,14 @@ impl<'a> Runner<'a> {
                 error += (b - scheme.embedded[stage]) * self.stages[stage][i];
             }
             self.h_next[i] = self.h[i] + dt * change;
-            self.known[i] = dt * error;
+            // What round-off leaves uncertain is no error of the step.
+            let noise = self.chain.net_noise(i, &self.x_next, &self.step_ws);
+            let size = dt * (error.abs() - noise).max(0.0) * self.weight[i];
+            if size > worst || error.is_nan() {
+                worst = if error.is_nan() { f64::NAN } else { size };
+            }
         }
-        Ok(self.chain.filtered_error(&self.known, &self.weight, &mut self.step_ws))
+        Ok(worst)
     }
 
     /// Takes the step just attempted.
@@ -453,13 +464,14 @@ impl<'a> Runner<'a> {
         for i in self.chain.first..self.h.len() {
             let material = self.chain.material(i);
             let part = self.chain.frozen_share(i, &self.x);
-            let change = (self.h[i] - self.h_next[i]).abs() * longer;
             if let (Some(sharp), true) = (&material.sharp, self.chain.fronts[i].is_some() || (part > 0.0 && part < 1.0))
             {
+                let change = (self.h[i] - self.h_next[i]).abs() * longer;
                 share = share.max(change / (sharp.latent * self.chain.region_area[self.chain.region[i]]));
             } else {
-                let rate = material.enthalpy.rate(self.ws.temperature[i]);
-                kelvin = kelvin.max(change / (self.chain.area[i] * rate));
+                // By the solved temperature: round-off of the flows gathers in the enthalpy of a cell of next to no capacity.
+                let before = material.enthalpy.inverse(self.x_next[i]).0;
+                kelvin = kelvin.max((self.ws.temperature[i] - before).abs() * longer);
             }
         }
         (kelvin, share)

@@ -192,7 +192,8 @@ impl View<'_> {
         }
         for (index, layer) in self.section.layers.iter().enumerate() {
             if radius <= layer.outside_radius_m {
-                return interpolate(&self.nodes(Region::Layer(index)), radius, true);
+                let smooth = !self.mesh.layers[index].clone().any(|cell| self.chain.fronts[cell].is_some());
+                return interpolate(&self.nodes(Region::Layer(index)), radius, smooth);
             }
         }
         f64::NAN
