@@ -107,7 +107,7 @@ fn quasi_steady() -> Vec<Row> {
             };
             let known = cylinder(bi, ste, [0.5, 0.0].map(|s| (s, closed(s) / ste)).into_iter());
             let (times, _) = known.solve(&Settings::default());
-            // The solid's own heat adds up to 0.7 Ste (a fixed wall: 1.067 at Ste = 0.1); the rest is the limit above.
+            // The solid's own heat adds up to 0.8 Ste; the rest is the limit above.
             let unit = RADIUS_M * RADIUS_M * RHO_C / K / ste;
             for ((what, want), got) in known.expected.iter().zip(times) {
                 let limit = LIMIT + 0.8 * ste;
