@@ -15,7 +15,7 @@ const SPACE_ORDER: f64 = 2.0;
 /// Coarse meshes are still on the way to the rate.
 const SHORTFALL: f64 = 0.3;
 /// Tolerance [K] at which time adds nothing to the error of the mesh.
-const TIGHT_K: f64 = 3e-6;
+const TIGHT_K: f64 = 2e-7;
 /// Errors below this [K] would prove nothing: the reference is stored to 1e-9 K.
 const ROUND_OFF_K: f64 = 1e-7;
 /// Tolerances of the sweep in time [K], and the one that stands for none.
