@@ -308,3 +308,20 @@ fn effort_is_what_it_was() {
     let trace = go(&outage(), &asked);
     insta::assert_debug_snapshot!(trace.effort);
 }
+
+#[test]
+fn a_line_that_freezes_slowly_is_not_taken_for_one_at_rest() {
+    // A bare core, from a wall held just below the freezing point (little heat moves) to one that freezes at once.
+    for (outside_k, film) in [(273.05, None), (253.15, None), (272.15, Some(500.0)), (233.15, Some(5.0))] {
+        let mut section = composite();
+        section.layers.clear();
+        section.heaters.clear();
+        section.start = Start::Uniform(273.15);
+        section.outside = Outside { temperature_k: Series::Constant(outside_k), film };
+        let mut asked = plan(1e10, vec![Condition::Frozen(0.5), Condition::Frozen(1.0)]);
+        asked.stop_when_answered = true;
+        asked.stop_when_settled = true;
+        let trace = go(&section, &asked);
+        assert_eq!(trace.end, End::Answered, "{outside_k} K, {film:?}: {:?}", trace.sightings);
+    }
+}
