@@ -29,6 +29,8 @@ pub struct Answer {
     pub outcome: Outcome,
     /// When it happens [s].
     pub time_s: Option<f64>,
+    /// Where it is too close to call: the earliest time at which any of the solutions meets it [s].
+    pub earliest_time_s: Option<f64>,
     /// Numerical error of the time [s]; `None` where it was not asked for (`--quick`).
     pub error_s: Option<f64>,
     /// A value other than a time: watts that hold, a temperature reached.

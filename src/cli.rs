@@ -51,7 +51,7 @@ enum Ask {
     Check {
         /// The case file.
         case: PathBuf,
-        /// Change one value of the case: `outside.air="-30 degC"`, `layer.lagging.thickness=80 mm`.
+        /// Change one value of the case: `outside.air=-30 degC`, `layer.lagging.thickness=80 mm`. May be repeated.
         #[arg(long = "set", value_name = "PATH=VALUE")]
         set: Vec<String>,
     },
@@ -78,7 +78,7 @@ enum Ask {
 struct Question {
     /// The case file.
     case: PathBuf,
-    /// Change one value of the case: `outside.air="-30 degC"`, `layer.lagging.thickness=80 mm`. May be repeated.
+    /// Change one value of the case: `outside.air=-30 degC`, `layer.lagging.thickness=80 mm`. May be repeated.
     #[arg(long = "set", value_name = "PATH=VALUE")]
     set: Vec<String>,
     /// Write answer.json, tables, figures and report.html into this folder.
@@ -153,7 +153,7 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
         Ok(()) => ExitCode::SUCCESS,
         Err(failure) => {
             if !failure.text().is_empty() {
-                eprintln!("{}", failure.text().trim_end());
+                tell(failure.text());
             }
             ExitCode::from(failure.status())
         }
@@ -171,10 +171,15 @@ fn print(text: &str) -> Result<(), Failure> {
     }
 }
 
+/// Says something on standard error; that nobody listens is no failure either (`eprintln!` would panic).
+fn tell(text: &str) {
+    let _ = writeln!(io::stderr(), "{}", text.trim_end());
+}
+
 fn load(path: &Path, set: &[String], quiet: bool) -> Result<Loaded, Failure> {
     let loaded = case::load(path, set).map_err(|faults| Failure::Input(faults.render_for_stderr()))?;
     if !quiet && !loaded.warnings.is_empty() {
-        eprintln!("{}", loaded.warnings.render_for_stderr().trim_end());
+        tell(&loaded.warnings.render_for_stderr());
     }
     Ok(loaded)
 }
@@ -209,7 +214,7 @@ fn answer(verb: Verb, asked: &Question) -> Result<(), Failure> {
         let written = report::write_folder(&folder, &findings)
             .map_err(|error| Failure::Computation(format!("error: {error}")))?;
         if !asked.quiet {
-            eprintln!("wrote {} files into {}", written.len(), folder.display());
+            tell(&format!("wrote {} files into {}", written.len(), folder.display()));
         }
         if asked.open {
             report::open(&folder.join("report.html"))
@@ -266,7 +271,7 @@ fn new(path: &Path, like: &str) -> Result<(), Failure> {
     };
     let written = case.write(path).map_err(|error| Failure::Input(format!("error: {error}")))?;
     for file in &written {
-        eprintln!("wrote {}", file.display());
+        tell(&format!("wrote {}", file.display()));
     }
     print(&format!("Now: stillwarm check {0}, then stillwarm {1} {0}\n", path.display(), case.verb))
 }

@@ -26,10 +26,13 @@ impl Rounding {
     }
 }
 
-/// A duration [s] in words: seconds below two minutes, minutes below two days, hours beyond, whole units to the side asked.
+/// A duration [s] in words, whole units to the side asked: seconds below twenty minutes, minutes below two days, hours
+/// beyond, so that from twenty seconds on rounding never takes more than a twentieth.
 ///
 /// ```
 /// use stillwarm::duration::{Rounding, words};
+/// assert_eq!(words(107.2, Rounding::Down), "107 s");
+/// assert_eq!(words(607.2, Rounding::Down), "10 min 7 s");
 /// assert_eq!(words(73_271.3, Rounding::Down), "20 h 21 min");
 /// assert_eq!(words(73_271.3, Rounding::Up), "20 h 22 min");
 /// assert_eq!(words(320_697.0, Rounding::Down), "3 d 17 h");
@@ -40,6 +43,13 @@ pub fn words(time_s: f64, rounding: Rounding) -> String {
     }
     if time_s < 120.0 {
         return format!("{} s", rounding.apply(time_s));
+    }
+    if time_s < 1200.0 {
+        let seconds = rounding.apply(time_s) as u64;
+        return match (seconds / 60, seconds % 60) {
+            (minutes, 0) => format!("{minutes} min"),
+            (minutes, seconds) => format!("{minutes} min {seconds} s"),
+        };
     }
     if time_s < 2.0 * 86_400.0 {
         let minutes = rounding.apply(time_s / 60.0) as u64;
@@ -85,6 +95,10 @@ mod tests {
             (0.0, "0 s", "0 s"),
             (45.6, "45 s", "46 s"),
             (119.9, "119 s", "120 s"),
+            (120.0, "2 min", "2 min"),
+            (128.1, "2 min 8 s", "2 min 9 s"),
+            (1199.5, "19 min 59 s", "20 min"),
+            (1259.9, "20 min", "21 min"),
             (7199.0, "1 h 59 min", "2 h"),
             (7200.0, "2 h", "2 h"),
             (86_399.0, "23 h 59 min", "24 h"),

@@ -44,9 +44,9 @@ use runner::{Flow, Runner, Stop};
 use view::View;
 
 /// A line has come to rest when what is left of its change is below this [K].
-const SETTLED_K: f64 = 1e-3;
+pub const SETTLED_K: f64 = 1e-3;
 /// The same for a frozen share.
-const SETTLED_SHARE: f64 = 1e-6;
+pub const SETTLED_SHARE: f64 = 1e-6;
 /// Steps between two reports of progress.
 const PROGRESS_STEPS: usize = 64;
 /// A recording of every step is thinned beyond this many rows.
@@ -139,7 +139,13 @@ pub fn run(
         let label = runner.apply(&event.change)?;
         marks.push(Mark { time_s: 0.0, label });
     }
-    runner.settle_triggers()?;
+    // A thermostat held the instant before it switches does so now.
+    if let Some((heater, on)) = runner.settle_triggers()?
+        && runner.controls.supply
+        && !runner.controls.tripped[heater]
+    {
+        marks.push(Mark { time_s: 0.0, label: switching_label(section, heater, on) });
+    }
 
     let liquidus_k =
         section.content.material.as_ref().and_then(|material| material.freezing_k).map_or(f64::NAN, |range| range.1);
@@ -237,8 +243,7 @@ pub fn run(
         if let Stop::Switched { heater, on } = stop {
             let powered = runner.controls.supply && !runner.controls.tripped[heater];
             if powered {
-                let name = &section.heaters[heater].name;
-                marks.push(Mark { time_s: runner.time, label: format!("{name} {}", if on { "on" } else { "off" }) });
+                marks.push(Mark { time_s: runner.time, label: switching_label(section, heater, on) });
             }
             if on && settles {
                 let state = runner.temperatures();
@@ -272,6 +277,11 @@ pub fn run(
         energy: runner.account(),
         effort: runner.effort(),
     })
+}
+
+/// Name of a thermostat's switching.
+fn switching_label(section: &Section, heater: usize, on: bool) -> String {
+    format!("{} {}", section.heaters[heater].name, if on { "on" } else { "off" })
 }
 
 /// Whether what is left of the line's change is too small to matter, judged by its last step.

@@ -274,3 +274,19 @@ fn a_reader_that_goes_away_is_no_panic() {
     let output = child.wait_with_output().unwrap();
     assert!(!String::from_utf8_lossy(&output.stderr).contains("panicked"));
 }
+
+#[test]
+fn nobody_listening_to_standard_error_is_no_panic() {
+    let scratch = tempfile::tempdir().unwrap();
+    let mut child = std::process::Command::new(env!("CARGO_BIN_EXE_stillwarm"))
+        .args(["outage", BRANCH, "--quick", "--out"])
+        .arg(scratch.path().join("report"))
+        .current_dir(env!("CARGO_MANIFEST_DIR"))
+        .stdout(std::process::Stdio::piped())
+        .stderr(std::process::Stdio::piped())
+        .spawn()
+        .unwrap();
+    drop(child.stderr.take());
+    // A panic would be status 101.
+    assert_eq!(child.wait_with_output().unwrap().status.code(), Some(0));
+}

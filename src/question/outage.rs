@@ -1,10 +1,12 @@
 //! `outage`: the supply is lost at 0 h; when is each limit passed?
 
-use super::{Asked, LONGEST_S, Options, QuestionError, answers, cautions, findings, plan, solve, told};
-use crate::answer::{Findings, OtherStart};
+use super::{
+    LONGEST_S, Options, QuestionError, answers, cautions, findings, from_the_warm_end, limits_asked, plan, solve, told,
+};
+use crate::answer::Findings;
 use crate::case::Loaded;
-use crate::march::{CyclePhase, Hold, Recording};
-use crate::section::{Change, Condition, Event, Limit, Place, Section, Start};
+use crate::march::{CyclePhase, Recording};
+use crate::section::{Change, Condition, Event, Limit, Place, Section};
 
 pub(super) fn ask(
     loaded: &Loaded,
@@ -18,46 +20,31 @@ pub(super) fn ask(
     if section.limits.is_empty() {
         section.limits = default_limits(&section)?;
     }
-    let asked: Vec<Asked> = section
-        .limits
-        .iter()
-        .map(|limit| Asked { name: limit.name.clone(), condition: limit.condition, danger: true })
-        .collect();
+    let asked = limits_asked(&section);
 
     let cold = plan(&asked, LONGEST_S, CyclePhase::BeforeOn, Recording::Steps);
     let solved = solve(&section, &cold, options, progress)?;
     let hold = solved.main.hold;
     let found = answers(&section, &asked, &solved);
-    let other_start = if matches!(hold, Hold::Cycle { .. }) {
-        let warm = plan(&asked, LONGEST_S, CyclePhase::AfterOff, Recording::Ends);
-        let solved = solve(&section, &warm, options, progress)?;
-        let description = "the warm end of the cycle, just after the thermostat switched off".into();
-        Some(OtherStart { description, answers: answers(&section, &asked, &solved) })
-    } else {
-        None
-    };
+    let other_start = from_the_warm_end(&section, &asked, &cold, hold, options, progress)?;
 
     let mut findings = findings("outage", loaded, section, solved, found, options);
     findings.other_start = other_start;
     findings.headline.push("The power is lost at 0 h.".into());
-    findings.headline.extend(findings.answers.iter().map(told::sentence));
+    findings.headline.extend(told::in_order(&findings.answers).into_iter().map(told::sentence));
     findings.headline.extend(told::start(&findings.section, &findings.start, hold));
-    if let (Some(other), Some(first)) = (&findings.other_start, findings.answers.first())
-        && first.time_s.is_some()
-    {
-        findings.headline.push(format!(
-            "From the warm end of that cycle: {}",
-            told::sentence(&other.answers[0]).trim_end_matches('.').to_owned() + "."
-        ));
+    let warm = findings.other_start.as_ref().and_then(told::from_the_warm_end);
+    findings.headline.extend(warm);
+    if let Some(line) = told::events_kept(&findings.section, &findings.marks) {
+        findings.assumptions.insert(0, line);
     }
-    if supply_events > 0 {
-        findings.assumptions.insert(
-            0,
-            format!(
-                "The case's own {supply_events} supply event(s) are left out: here the supply stays lost from 0 h on."
-            ),
-        );
-    }
+    findings.assumptions.insert(
+        0,
+        match supply_events {
+            0 => "The supply stays lost.".into(),
+            _ => "The supply stays lost: the case's own events of the supply are left out.".into(),
+        },
+    );
     findings.cautions = cautions::that_apply(&findings);
     Ok(findings)
 }
@@ -78,11 +65,11 @@ fn default_limits(section: &Section) -> Result<Vec<Limit>, QuestionError> {
         return Ok(vec![limit("lowest temperature of use", Condition::Below(Place::ContentSurface, lowest))]);
     }
     let hint = "hint: add a [[limit]] with a name, where and below";
-    let reason = match (material, section.start) {
-        (None, _) => format!("the case names no limit, and without a content nothing can freeze\n{hint}"),
-        (Some(material), Start::Uniform(_) | Start::Hold | Start::Reading { .. }) => {
+    let reason = material.map_or_else(
+        || format!("the case names no limit, and without a content nothing can freeze\n{hint}"),
+        |material| {
             format!("the case names no limit, and no freezing or setting point of '{}' is known\n{hint}", material.name)
-        }
-    };
+        },
+    );
     Err(QuestionError::NoAnswer { reason })
 }

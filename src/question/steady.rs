@@ -1,6 +1,6 @@
 //! `steady`: where each face sits, where the heat goes, and the watts that hold each target.
 
-use super::{ERROR_FACTOR, FINER_MESH, Options, QuestionError, cautions, cautious_section, is_lagging, told};
+use super::{ERROR_FACTOR, FINER_MESH, Options, QuestionError, cautions, cautious_section, told};
 use crate::answer::{Answer, Findings, Outcome};
 use crate::case::Loaded;
 use crate::history::{Effort, Energy};
@@ -18,6 +18,7 @@ fn value_answer(name: String, value: f64, error: Option<f64>, unit: &str, place:
         name,
         outcome: Outcome::Reached,
         time_s: None,
+        earliest_time_s: None,
         error_s: None,
         value: Some(value),
         unit: unit.into(),
@@ -64,8 +65,23 @@ pub(super) fn ask(loaded: &Loaded, options: &Options) -> Result<Findings, Questi
     };
     findings.assumptions.insert(
         0,
-        "At rest under the outside of 0 h, every heater on at its stated output; thermostats do not act.".into(),
+        "At rest under the outside of 0 h, every heater on without pause at its stated output: thermostats do not act, so that \
+         'with the given output' is also what a thermostat stuck on comes to."
+            .into(),
     );
+    let beyond = told::beyond_tables(&findings.section, &findings.history);
+    findings.assumptions.extend(beyond);
+    findings.assumptions.push(match options.quick {
+        true => "Solved once (--quick): the numerical error is not known and no cautious answer was worked out.".into(),
+        false => format!(
+            "The numerical error is {ERROR_FACTOR:.0} times the change on a mesh twice as fine, and the heat that the conductance \
+             matrix cannot account for. It is the solution's, not the accuracy of the inputs."
+        ),
+    });
+    if !options.quick && !findings.section.targets.is_empty() {
+        let about = told::cautious_meaning(&findings.section);
+        findings.assumptions.extend(about);
+    }
     for target in &findings.section.targets.clone() {
         target_answers(&mut findings, target, &solution, finer.as_ref(), total, options)?;
     }
@@ -79,8 +95,8 @@ pub(super) fn ask(loaded: &Loaded, options: &Options) -> Result<Findings, Questi
 fn heat_split(section: &Section, solution: &Steady, total: f64) -> String {
     let lost = solution.snapshot.lost_w_per_m;
     let mut text = format!(
-        "At {:.1} °C outside the heaters give {} W per metre of line and {} W/m are lost",
-        section.outside.temperature_k.at(0.0) - 273.15,
+        "At {} °C outside the heaters give {} W per metre of line and {} W/m are lost",
+        told::degrees(section.outside.temperature_k.at(0.0)),
         told::plain(total),
         told::plain(lost)
     );
@@ -108,29 +124,30 @@ fn target_answers(
 ) -> Result<(), QuestionError> {
     let section = findings.section.clone();
     let place = section.place_name(target.place);
-    let wanted = target.at_least_k - 273.15;
-    let given = solution.temperature(target.place);
-    let given_error = finer.map(|finer| ERROR_FACTOR * (given - finer.temperature(target.place)).abs());
+    let wanted = told::degrees(target.at_least_k);
     let refinement = options.settings.refinement;
+    let given = solution.temperature(target.place);
+    // Heat unaccounted for would raise the place by its share of the whole way out.
+    let way_out: f64 = solution.resistances.iter().map(|(_, resistance)| resistance).sum();
+    let given_error = finer.map(|finer| {
+        ERROR_FACTOR * (given - finer.temperature(target.place)).abs() + solution.imbalance_w_per_m * way_out
+    });
     let held = |section: &Section, refinement: f64| {
         let full: f64 = full_output(section).iter().sum();
-        factor_that_holds(section, target.place, target.at_least_k, refinement).map(|(factor, _)| factor * full)
+        factor_that_holds(section, target.place, target.at_least_k, refinement)
+            .map(|(factor, steady)| (factor * full, steady.imbalance_w_per_m))
     };
     match held(&section, refinement) {
-        Ok(watts) => {
+        Ok((watts, imbalance)) => {
             let error = if options.quick {
                 None
             } else {
-                Some(ERROR_FACTOR * (watts - held(&section, refinement * FINER_MESH)?).abs())
+                Some(ERROR_FACTOR * (watts - held(&section, refinement * FINER_MESH)?.0).abs() + imbalance)
             };
             let mut text = if watts <= 0.0 {
-                format!("'{}' ({place} at {wanted:.1} °C) needs no heat in this weather", target.name)
+                format!("'{}' ({place} at {wanted} °C) needs no heat in this weather", target.name)
             } else {
-                format!(
-                    "{} W per metre of line hold '{}' ({place} at {wanted:.1} °C)",
-                    told::round_up(watts),
-                    target.name
-                )
+                format!("{} W per metre of line hold '{}' ({place} at {wanted} °C)", told::round_up(watts), target.name)
             };
             if watts > 0.0 {
                 let runs: f64 = section.heaters.iter().map(|heater| heater.runs).sum();
@@ -144,12 +161,19 @@ fn target_answers(
                 if watts > total {
                     text.push_str(", which does not hold it");
                 }
-                if !options.quick && section.layers.iter().any(is_lagging) {
-                    let cautious = held(&cautious_section(&section), refinement)?;
-                    text.push_str(&format!(
-                        " (cautious: {} W/m, lagging conducting 25 % more)",
-                        told::round_up(cautious)
-                    ));
+                if !options.quick
+                    && let Some(worse) = cautious_section(&section)
+                {
+                    let (cautious, _) = held(&worse, refinement)?;
+                    let low: f64 = full_output(&worse).iter().sum();
+                    text.push_str(&format!(" (cautious: {} W/m", told::round_up(cautious)));
+                    if low < total {
+                        text.push_str(&format!(" of {} W/m at the lower tolerance", told::plain(low)));
+                    }
+                    if cautious > low && watts <= total {
+                        text.push_str(", which would not hold it");
+                    }
+                    text.push(')');
                 }
             }
             findings.headline.push(text + ".");
@@ -168,7 +192,9 @@ fn target_answers(
         }
         Err(error) => return Err(error.into()),
     }
-    findings.headline.push(format!("With the given output {place} comes to {} °C.", told::degrees(given)));
+    findings
+        .headline
+        .push(format!("With the given output on without pause, {place} comes to {} °C.", told::degrees(given)));
     findings.answers.push(value_answer(
         format!("{place} with the given output"),
         given - 273.15,

@@ -1,21 +1,25 @@
 //! Findings in words: sentences, what governs, what was assumed.
 
 use super::{CAUTIOUS_CONDUCTIVITY, ERROR_FACTOR, is_lagging};
-use crate::answer::{Answer, Outcome};
+use crate::answer::{Answer, OtherStart, Outcome};
 use crate::case::Loaded;
 use crate::duration::{Rounding, words};
-use crate::history::Snapshot;
+use crate::history::{History, Mark, Snapshot};
 use crate::march::{Hold, Trace, steady::balance};
 use crate::section::{ContentState, Section, Start};
 
-/// A number with three figures, without trailing zeros.
+/// How far beyond a material's tables temperatures may lie without a word [K].
+const BEYOND_K: f64 = 15.0;
+
+/// A number with three figures, without trailing zeros and with a real minus sign.
 pub(super) fn plain(value: f64) -> String {
     if value == 0.0 || !value.is_finite() {
         return format!("{value}");
     }
     let decimals = (2 - value.abs().log10().floor() as i32).clamp(0, 9) as usize;
     let text = format!("{value:.decimals$}");
-    if text.contains('.') { text.trim_end_matches('0').trim_end_matches('.').into() } else { text }
+    let text = if text.contains('.') { text.trim_end_matches('0').trim_end_matches('.') } else { &text };
+    text.replace('-', "\u{2212}")
 }
 
 /// The same rounded up in its third figure: heat that is needed is never understated.
@@ -27,9 +31,27 @@ pub(super) fn round_up(value: f64) -> String {
     plain((value / unit - 1e-9).ceil() * unit)
 }
 
-/// A temperature in degC with one decimal.
+/// A temperature in degC with one decimal and a real minus sign.
 pub(super) fn degrees(kelvin: f64) -> String {
-    format!("{:.1}", kelvin - 273.15)
+    with_decimals(kelvin - 273.15, 1)
+}
+
+fn with_decimals(value: f64, decimals: usize) -> String {
+    let text = format!("{value:.decimals$}");
+    match text.strip_prefix('-') {
+        Some(digits) if digits.chars().all(|digit| matches!(digit, '0' | '.')) => digits.into(),
+        Some(digits) => format!("\u{2212}{digits}"),
+        None => text,
+    }
+}
+
+/// A list in words: `a`, `a and b`, `a, b and c`.
+pub(super) fn enumerated(items: &[String]) -> String {
+    match items {
+        [] => String::new(),
+        [only] => only.clone(),
+        [most @ .., last] => format!("{} and {last}", most.join(", ")),
+    }
 }
 
 fn capitalised(name: &str) -> String {
@@ -37,38 +59,62 @@ fn capitalised(name: &str) -> String {
     letters.next().map_or(String::new(), |first| first.to_uppercase().collect::<String>() + letters.as_str())
 }
 
+fn time_words(answer: &Answer, time_s: f64) -> String {
+    words(time_s, if answer.danger { Rounding::Down } else { Rounding::Up })
+}
+
+/// The answers in the order in which they happen; what never happens comes last.
+pub(super) fn in_order(answers: &[Answer]) -> Vec<&Answer> {
+    let mut sorted: Vec<_> = answers.iter().collect();
+    let key = |answer: &Answer| answer.time_s.or(answer.earliest_time_s).unwrap_or(f64::INFINITY);
+    sorted.sort_by(|a, b| key(a).total_cmp(&key(b)));
+    sorted
+}
+
 /// One answer as a sentence, rounded to the safe side, the cautious one beside it.
 pub(super) fn sentence(answer: &Answer) -> String {
-    let rounding = if answer.danger { Rounding::Down } else { Rounding::Up };
     let name = capitalised(&answer.name);
     let cautious = match (answer.cautious_outcome, answer.cautious_time_s) {
-        (Some(_), Some(time_s)) => format!(" (cautious: {})", words(time_s, rounding)),
-        (Some(_), None) => " (cautious: not reached)".to_string(),
+        (Some(_), Some(time_s)) => format!(" (cautious: {})", time_words(answer, time_s)),
+        (Some(Outcome::SettlesShort), None) => " (cautious: never)".to_string(),
+        (Some(_), None) => " (cautious: not either)".to_string(),
         (None, _) => String::new(),
     };
-    let short_of = || match (answer.closest_value, answer.limit_value, answer.unit.as_str()) {
-        (Some(closest), Some(limit), "degC") => {
-            format!("closest {closest:.2} °C at {}, {:.2} K from it", answer.place, (closest - limit).abs())
-        }
-        (Some(closest), ..) => format!("{:.1} % at the most extreme", 100.0 * closest),
-        _ => "closest approach unknown".into(),
-    };
     match (answer.outcome, answer.time_s) {
-        (Outcome::Reached, Some(0.0)) => format!("{name} holds from the start."),
-        (Outcome::Reached, Some(time_s)) => format!("{name} after {}{cautious}.", words(time_s, rounding)),
-        (Outcome::TooClose, Some(time_s)) => format!(
-            "{name}: too close to call, for the numerical error decides; about {}{cautious}.",
-            words(time_s, rounding)
-        ),
-        (Outcome::TooClose, None) => {
-            format!("{name}: too close to call, {}: within its own numerical error{cautious}.", short_of())
-        }
-        (Outcome::SettlesShort, _) => format!("{name}: never; the line comes to rest, {}{cautious}.", short_of()),
-        (Outcome::RunEnded, _) => format!("{name}: not within the run, {}{cautious}.", short_of()),
-        (Outcome::WeatherEnded, _) => {
-            format!("{name}: not before the weather's table ends, {}{cautious}.", short_of())
-        }
+        (Outcome::Reached, Some(0.0)) => format!("{name}: so from the start."),
+        (Outcome::Reached, Some(time_s)) => format!("{name} after {}{cautious}.", time_words(answer, time_s)),
         (Outcome::Reached, None) => format!("{name} is reached."),
+        (Outcome::TooClose, _) => {
+            let earliest = answer.earliest_time_s.map_or_else(
+                || format!("{}, within its numerical error", closest(answer)),
+                |time_s| format!("if it happens, not before about {}", words(time_s, Rounding::Down)),
+            );
+            format!("{name}: too close to call; {earliest}{cautious}.")
+        }
+        (Outcome::SettlesShort, _) => format!("{name}: never; {}{cautious}.", closest(answer)),
+        (Outcome::RunEnded, _) => format!("{name}: not within the run; {}{cautious}.", closest(answer)),
+        (Outcome::WeatherEnded, _) => {
+            format!("{name}: not before the weather's table ends; {}{cautious}.", closest(answer))
+        }
+    }
+}
+
+/// The closest approach in words, with its distance.
+fn closest(answer: &Answer) -> String {
+    match (answer.closest_value, answer.limit_value, answer.unit.as_str()) {
+        (Some(closest), Some(limit), "degC") => {
+            let side = if closest > limit { "above" } else { "below" };
+            format!(
+                "{} comes no closer than {} °C, {} K {side} it",
+                answer.place,
+                with_decimals(closest, 2),
+                plain((closest - limit).abs())
+            )
+        }
+        // Round-off is no ice.
+        (Some(closest), ..) if closest.abs() < 1e-9 => "nothing freezes".into(),
+        (Some(closest), ..) => format!("the frozen share comes no closer than {} %", plain(100.0 * closest)),
+        _ => "its closest approach is not known".into(),
     }
 }
 
@@ -78,8 +124,16 @@ pub(super) fn start(section: &Section, start: &Snapshot, hold: Hold) -> Vec<Stri
         || start.content_mean_k.map_or(String::new(), |mean| format!("content at {} °C", degrees(mean))),
         |(name, kelvin)| format!("{name} at {} °C", degrees(*kelvin)),
     );
-    match hold {
-        Hold::None => Vec::new(),
+    let mut lines = match hold {
+        Hold::None => match section.start {
+            Start::Uniform(kelvin) => vec![format!("It starts at {} °C throughout.", degrees(kelvin))],
+            Start::Reading { place, temperature_k } => vec![format!(
+                "It starts from the reading of {} °C at {}.",
+                degrees(temperature_k),
+                section.place_name(place)
+            )],
+            Start::Hold => Vec::new(),
+        },
         Hold::Cycle { period_s, duty } => vec![format!(
             "It starts at the cold end of the thermostat's cycle ({place}), which lasts {} with the heater on for {:.0} % of it.",
             words(period_s, Rounding::Nearest),
@@ -101,7 +155,11 @@ pub(super) fn start(section: &Section, start: &Snapshot, hold: Hold) -> Vec<Stri
                 )]
             }
         }
+    };
+    if start.frozen_share > 0.0 {
+        lines.push(format!("It is {} % frozen at the start.", plain(100.0 * start.frozen_share)));
     }
+    lines
 }
 
 /// The state in a few words.
@@ -112,7 +170,7 @@ pub(super) fn state(section: &Section, state: &Snapshot) -> String {
     }
     parts.extend(state.faces.iter().map(|(name, kelvin)| format!("{name} {} °C", degrees(*kelvin))));
     if section.content.material.as_ref().is_some_and(|material| material.freezing_k.is_some()) {
-        parts.push(format!("{:.1} % frozen", 100.0 * state.frozen_share));
+        parts.push(format!("{} % frozen", plain(100.0 * state.frozen_share)));
     }
     parts.join(", ")
 }
@@ -130,12 +188,17 @@ pub(super) fn resistances(found: &[(String, f64)]) -> Vec<String> {
         .filter(|(_, resistance)| *resistance >= 0.0005 * sum)
         .map(|(name, resistance)| format!("{name} {:.1} %", 100.0 * resistance / sum))
         .collect();
-    vec![format!("The way out resists by {} m K/W: {}.", plain(sum), shares.join(", "))]
+    vec![format!("The heat's way out resists by {} m K/W: {}.", plain(sum), shares.join(", "))]
 }
 
 /// What governs a march: the resistances at its start, and the heat that stands between it and freezing.
 pub(super) fn governs(section: &Section, trace: &Trace) -> Vec<String> {
+    // With the heat that is lost at the start, so that conductivities are those of about its temperatures.
     let outputs: Vec<f64> = section.heaters.iter().map(|heater| heater.output_per_line_w_per_m().max(1.0)).collect();
+    let total: f64 = outputs.iter().sum();
+    let lost = trace.start.lost_w_per_m;
+    let share = if lost > 0.0 && total > 0.0 { lost / total } else { 1.0 };
+    let outputs: Vec<f64> = outputs.iter().map(|output| share * output).collect();
     let mut lines =
         balance(section, &outputs, 1.0).map_or_else(|_| Vec::new(), |steady| resistances(&steady.resistances));
     let still_there = matches!(section.content.state, ContentState::Still | ContentState::Stirred { .. });
@@ -156,6 +219,19 @@ pub(super) fn governs(section: &Section, trace: &Trace) -> Vec<String> {
         }
     }
     lines
+}
+
+/// The case's own events that were met, in words; those of the supply are the question itself.
+pub(super) fn events_kept(section: &Section, marks: &[Mark]) -> Option<String> {
+    let switched = |label: &str| {
+        section.heaters.iter().any(|heater| ["on", "off"].iter().any(|way| label == format!("{} {way}", heater.name)))
+    };
+    let met: Vec<String> = marks
+        .iter()
+        .filter(|mark| !switched(&mark.label) && !mark.label.starts_with("supply"))
+        .map(|mark| format!("{} at {}", mark.label, words(mark.time_s, Rounding::Nearest)))
+        .collect();
+    (!met.is_empty()).then(|| format!("The case's other events happen as they stand: {}.", enumerated(&met)))
 }
 
 /// What the inputs rest on, whatever the verb.
@@ -194,13 +270,12 @@ pub(super) fn inputs(loaded: &Loaded, section: &Section) -> Vec<String> {
 pub(super) fn assumptions(loaded: &Loaded, section: &Section, trace: &Trace) -> Vec<String> {
     let mut lines = Vec::new();
     match section.start {
-        Start::Uniform(kelvin) => lines.push(format!("Everything starts at {} °C.", degrees(kelvin))),
         Start::Reading { place, temperature_k } => lines.push(format!(
             "Everything inside {} starts at the reading of {} °C, everything outside it in balance with the outside, without heat.",
             section.place_name(place),
             degrees(temperature_k)
         )),
-        Start::Hold => {}
+        Start::Uniform(_) | Start::Hold => {}
     }
     if section.heaters.iter().any(|heater| heater.thermostat.is_some()) && matches!(trace.hold, Hold::None) {
         lines.push("A thermostat that starts within its band is off until its sensor falls to the lower point.".into());
@@ -221,15 +296,102 @@ pub(super) fn assumptions(loaded: &Loaded, section: &Section, trace: &Trace) -> 
         lines.push("Heaters on a face have no thickness and no sheath temperature here; the wall is round and even, its hottest spot under a strip is not.".into());
     }
     lines.extend(inputs(loaded, section));
-    if section.layers.iter().any(is_lagging) {
-        let low = section.heaters.iter().any(|heater| heater.output_low_w_per_m < heater.output_w_per_m);
-        lines.push(format!(
-            "The cautious answer: lagging that conducts {:.0} % more{}.",
-            100.0 * (CAUTIOUS_CONDUCTIVITY - 1.0),
-            if low { ", heaters at the lower end of their tolerance" } else { "" }
-        ));
+    lines.extend(beyond_tables(section, &trace.history));
+    lines
+}
+
+/// What is worse in the cautious answer; nothing where nothing is.
+pub(super) fn cautious_meaning(section: &Section) -> Option<String> {
+    let mut worse = Vec::new();
+    let lagging: Vec<String> =
+        section.layers.iter().filter(|layer| is_lagging(layer)).map(|layer| layer.name.clone()).collect();
+    if !lagging.is_empty() {
+        let more = 100.0 * (CAUTIOUS_CONDUCTIVITY - 1.0);
+        worse.push(format!("{} conducting {more:.0} % more", enumerated(&lagging)));
+    }
+    if section.heaters.iter().any(|heater| heater.output_low_w_per_m < heater.output_w_per_m) {
+        worse.push("heaters at the lower end of their tolerance".into());
+    }
+    (!worse.is_empty()).then(|| format!("The cautious answer: {}.", enumerated(&worse)))
+}
+
+/// What the cautious answer means, or why there is none.
+pub(super) fn cautious_answer(section: &Section, answers: &[Answer], without: Option<&str>) -> Vec<String> {
+    let mut lines = Vec::new();
+    if let Some(why) = without {
+        lines.push(format!("{}.", capitalised(why)));
+    } else if answers.iter().any(|answer| answer.cautious_outcome.is_some()) {
+        lines.extend(cautious_meaning(section));
+    }
+    let earlier = |answer: &Answer| {
+        answer.danger && answer.time_s.is_some_and(|time| time > 0.0 && answer.cautious_time_s == Some(time))
+    };
+    if without.is_none() && answers.iter().any(earlier) {
+        lines.push(
+            "Where the cautious answer is the answer itself, the worse line happened to be warmer when the heat went, for its \
+             thermostat stood at another point of its cycle: a worse moment may give less time than either."
+                .into(),
+        );
+    }
+    if answers.iter().any(|answer| answer.danger && answer.unit == "degC" && answer.cautious_outcome.is_none())
+        && without.is_none()
+    {
+        lines.push("A limit on heat has no cautious answer: worse lagging and less heat would only flatter it.".into());
     }
     lines
+}
+
+/// Content and lagging that were far hotter or colder than what their tables cover; walls conduct well whatever they are at.
+pub(super) fn beyond_tables(section: &Section, history: &History) -> Option<String> {
+    let range = |values: Vec<f64>| {
+        values
+            .into_iter()
+            .filter(|kelvin| kelvin.is_finite())
+            .fold((f64::INFINITY, f64::NEG_INFINITY), |(low, high): (f64, f64), kelvin| {
+                (low.min(kelvin), high.max(kelvin))
+            })
+    };
+    let mut met = Vec::new();
+    if let Some(material) = &section.content.material {
+        met.push((material, range(history.content_mean_k.iter().chain(&history.centre_k).copied().collect())));
+    }
+    for (index, layer) in section.layers.iter().enumerate().filter(|(_, layer)| is_lagging(layer)) {
+        let faces = [2 * index, 2 * index + 1];
+        met.push((
+            &layer.material,
+            range(faces.iter().flat_map(|&face| history.faces_k.column(face).to_vec()).collect()),
+        ));
+    }
+    let beyond: Vec<String> = met
+        .into_iter()
+        // A single value claims no range.
+        .filter(|(material, (low, high))| {
+            let (from, to) = material.covers_k;
+            to > from && (*low < from - BEYOND_K || *high > to + BEYOND_K)
+        })
+        .map(|(material, (low, high))| {
+            let (from, to) = material.covers_k;
+            format!(
+                "{} covers {} to {} °C and is at {} to {} °C here",
+                material.name,
+                plain(from - 273.15),
+                plain(to - 273.15),
+                degrees(low),
+                degrees(high)
+            )
+        })
+        .collect();
+    (!beyond.is_empty())
+        .then(|| format!("Beyond a material's tables their end values are used: {}.", enumerated(&beyond)))
+}
+
+/// The answers from the other end of the thermostat's cycle in one sentence; nothing where none is reached.
+pub(super) fn from_the_warm_end(other: &OtherStart) -> Option<String> {
+    let times: Vec<String> = in_order(&other.answers)
+        .into_iter()
+        .filter_map(|answer| Some(format!("{} after {}", answer.name, time_words(answer, answer.time_s?))))
+        .collect();
+    (!times.is_empty()).then(|| format!("From the warm end of that cycle: {}.", enumerated(&times)))
 }
 
 /// How the numbers were made.
@@ -238,8 +400,8 @@ pub(super) fn methods(quick: bool) -> Vec<String> {
         "Solved once (--quick): the numerical error is not known and no cautious answer was worked out.".into()
     } else {
         format!(
-            "The numerical error is {ERROR_FACTOR:.0} times the change on a mesh twice as fine plus that at tolerances ten times tighter. \
-             It is the solution's, not the accuracy of the inputs."
+            "The numerical error is {ERROR_FACTOR:.0} times the sum of two changes: on a mesh twice as fine, and at tolerances ten \
+             times tighter. It is the solution's, not the accuracy of the inputs."
         )
     }]
 }

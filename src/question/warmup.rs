@@ -1,10 +1,10 @@
 //! `warmup`: from cold with every heater on; when is each target met, and at what energy?
 
-use super::{Asked, LONGEST_S, Options, QuestionError, answers, cautions, findings, plan, solve, told};
-use crate::answer::Findings;
+use super::{Asked, LONGEST_S, Options, QuestionError, answers, cautions, findings, limits_asked, plan, solve, told};
+use crate::answer::{Findings, Outcome};
 use crate::case::Loaded;
-use crate::march::{CyclePhase, Recording};
-use crate::section::{Change, Condition, ContentState, Start};
+use crate::march::{CyclePhase, Plan, Recording};
+use crate::section::{Change, Condition, ContentState, Section, Start};
 
 pub(super) fn ask(
     loaded: &Loaded,
@@ -62,22 +62,50 @@ pub(super) fn ask(
         }
     }
     let length = section.line.effective_length_m();
+    let (hot, end_s) = (limits_on_heat(&section), solved.main.end_time_s);
+    // Nothing stops the heat here: what it passes on the way has to be known.
+    let passed = if hot.is_empty() {
+        Vec::new()
+    } else {
+        let to_the_end = Plan {
+            stop_when_answered: false,
+            stop_when_settled: false,
+            ..plan(&hot, end_s, CyclePhase::BeforeOn, Recording::Ends)
+        };
+        let solved = solve(&section, &to_the_end, options, progress)?;
+        let mut passed = answers(&section, &hot, &solved);
+        passed.retain(|answer| answer.time_s.is_some() || answer.outcome == Outcome::TooClose);
+        passed
+    };
     let mut findings = findings("warmup", loaded, section, solved, found, options);
     findings.headline.push(format!(
-        "From {:.1} °C throughout, with every heater on ({:.1} W per metre of line).",
-        start_k - 273.15,
-        output_w_per_m
+        "From {} °C throughout, with every heater on ({} W per metre of line).",
+        told::degrees(start_k),
+        told::plain(output_w_per_m)
     ));
-    for answer in &findings.answers {
+    let mut sentences = Vec::new();
+    for answer in told::in_order(&findings.answers) {
         let mut sentence = told::sentence(answer);
         if let Some(joules) = answer.value {
             let kwh = joules / 3.6e6;
             let line = length.map_or(String::new(), |length| {
                 format!(", {} kWh for the line's {} m", told::round_up(kwh * length), told::plain(length))
             });
-            sentence = format!("{} It takes {} kWh/m{line}.", sentence, told::round_up(kwh));
+            sentence.push_str(&format!(" It takes {} kWh/m{line}.", told::round_up(kwh)));
         }
-        findings.headline.push(sentence);
+        sentences.push(sentence);
+    }
+    findings.headline.extend(sentences);
+    for answer in &passed {
+        findings.headline.push(format!("On the way, for nothing stops the heat here: {}", told::sentence(answer)));
+    }
+    if !hot.is_empty() && passed.is_empty() {
+        let names: Vec<String> = hot.iter().map(|asked| format!("'{}'", asked.name)).collect();
+        findings.headline.push(format!("Not passed on the way: {}.", told::enumerated(&names)));
+    }
+    findings.answers.extend(passed);
+    if let Some(line) = told::events_kept(&findings.section, &findings.marks) {
+        findings.assumptions.insert(0, line);
     }
     findings.assumptions.insert(
         0,
@@ -90,4 +118,11 @@ pub(super) fn ask(
     }
     findings.cautions = cautions::that_apply(&findings);
     Ok(findings)
+}
+
+/// The case's limits on heat.
+fn limits_on_heat(section: &Section) -> Vec<Asked> {
+    let mut limits = limits_asked(section);
+    limits.retain(|asked| matches!(asked.condition, Condition::Above(..)));
+    limits
 }

@@ -35,19 +35,34 @@ pub fn text(findings: &Findings, quiet: bool) -> String {
     list(&mut out, "What governs", &findings.governs);
     list(&mut out, "What it rests on", &findings.assumptions);
     list(&mut out, "Cautions", &findings.cautions);
+    out.push('\n');
+    wrapped(&mut out, "", "  ", &provenance(findings));
+    out
+}
+
+/// How well the energy closes, what it cost, and what was solved by what.
+fn provenance(findings: &Findings) -> String {
+    let residual = findings.energy.residual_relative;
+    let closes = if residual == 0.0 {
+        "Energy closes to the last digit".into()
+    } else {
+        format!("Energy closes to {residual:.0e}")
+    };
     let effort = &findings.effort;
-    let _ = writeln!(
-        out,
-        "\nEnergy closes to {:.0e}; {} cells, {} steps ({} rejected), {} Newton iterations. stillwarm {}, input {}",
-        findings.energy.residual_relative,
+    let marched = if effort.steps == 0 {
+        String::new()
+    } else {
+        format!(
+            ", {} steps ({} rejected), {} Newton iterations",
+            effort.steps, effort.rejected_steps, effort.newton_iterations
+        )
+    };
+    format!(
+        "{closes}; {} cells{marched}. stillwarm {}, input {}",
         effort.cells,
-        effort.steps,
-        effort.rejected_steps,
-        effort.newton_iterations,
         env!("CARGO_PKG_VERSION"),
         findings.input_digest.get(..12).unwrap_or(&findings.input_digest),
-    );
-    out
+    )
 }
 
 /// A table of the answers; the numerical error stands apart, for it is not the accuracy of the inputs.
@@ -80,14 +95,16 @@ fn answers(out: &mut String, answers: &[Answer]) {
 /// The answer itself in a few words.
 fn told(answer: &Answer) -> String {
     let time = answer.time_s.map(|time| duration_words(time, answer.danger));
-    let value = answer.value.map(|value| quantity(value, &answer.unit));
+    let value = answer.value.map(|value| quantity(value, 4, &answer.unit));
     match (answer.outcome, time) {
         (Outcome::Reached, Some(time)) => match value {
             Some(value) => format!("{time}, {value}"),
             None => time,
         },
-        (Outcome::TooClose, Some(time)) => format!("{time}, too close to call"),
-        (Outcome::TooClose, None) => format!("too close to call{}", closest(answer)),
+        (Outcome::TooClose, _) => answer.earliest_time_s.map_or_else(
+            || format!("too close to call{}", closest(answer)),
+            |earliest| format!("too close to call, not before {}", duration_words(earliest, true)),
+        ),
         (Outcome::Reached, None) => value.unwrap_or_else(|| "reached".into()),
         (Outcome::SettlesShort, _) => format!("never{}", closest(answer)),
         (Outcome::RunEnded, _) => format!("not within the run{}", closest(answer)),
@@ -103,7 +120,7 @@ fn closest(answer: &Answer) -> String {
                 .map_or(String::new(), |limit| format!(", {} K off", figures((value - limit).abs(), 2)));
             format!(" (closest {} °C{gap})", fixed(value, 2))
         }
-        Some(value) => format!(" (at most {} %)", fixed(100.0 * value, 1)),
+        Some(value) => format!(" (closest {} %)", fixed(100.0 * value, 1)),
         None => String::new(),
     }
 }
@@ -123,26 +140,39 @@ fn error(answer: &Answer) -> String {
         return format!("± {}", error_words(error));
     }
     match (answer.error, answer.closest_error) {
-        (Some(error), _) if answer.value.is_some() => format!("± {}", quantity(error, &answer.unit)),
-        (_, Some(error)) if answer.unit == "degC" => format!("± {} K", figures(error, 2)),
-        (_, Some(error)) => format!("± {} %", figures(100.0 * error, 2)),
+        (Some(error), _) if answer.value.is_some() => small(error, &answer.unit),
+        (_, Some(error)) if answer.unit == "degC" => small(error, "K"),
+        (_, Some(error)) => small(100.0 * error, "%"),
+        _ if answer.outcome == Outcome::TooClose => "decides".into(),
         _ => "not asked for".into(),
     }
 }
 
-/// A value with its unit; energies in the unit of the meter.
-fn quantity(value: f64, unit: &str) -> String {
-    match unit {
-        "degC" => format!("{} °C", figures(value, 4)),
-        "J/m" => format!("{} kWh/m", figures(value / 3.6e6, 3)),
-        "-" => format!("{} %", figures(100.0 * value, 3)),
-        other => format!("{} {other}", figures(value, 4)),
-    }
+/// An error; where it is too small to matter, so much is said.
+fn small(error: f64, unit: &str) -> String {
+    let unit = if unit == "degC" { "K" } else { unit };
+    if error < 0.001 { format!("under 0.001 {unit}") } else { format!("± {}", quantity(error, 2, unit)) }
+}
+
+/// A value with its unit as people write it; energy in kWh.
+fn quantity(value: f64, significant: usize, unit: &str) -> String {
+    let (value, unit) = match unit {
+        "degC" => (value, "°C"),
+        "J/m" => (value / 3.6e6, "kWh/m"),
+        "-" => (100.0 * value, "%"),
+        other => (value, other),
+    };
+    format!("{} {unit}", figures(value, significant))
 }
 
 fn start(out: &mut String, findings: &Findings) {
     let start = &findings.start;
-    let title = if findings.verb == "steady" { "At rest" } else { "At the start" };
+    let title = match findings.verb {
+        "steady" => "At rest",
+        // The state before the events of 0 h, those of the question itself among them.
+        "outage" => "Just before the power is lost",
+        _ => "At the start, before any event",
+    };
     let mut words = Vec::new();
     if let Some(mean) = start.content_mean_k {
         words.push(format!("content {} °C", fixed(degc(mean), 2)));

@@ -234,6 +234,7 @@ fn answer(name: &str, time_s: Option<f64>, limit_value: f64, unit: &str, place: 
         name: name.into(),
         outcome: if time_s.is_some() { Outcome::Reached } else { Outcome::RunEnded },
         time_s,
+        earliest_time_s: None,
         error_s: time_s.map(|time| 1.5 + 1e-5 * time),
         value: None,
         unit: unit.into(),
