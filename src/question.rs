@@ -151,8 +151,11 @@ fn solve(
         share_tolerance: settings.share_tolerance * TIGHTER,
         ..settings
     };
-    solved.refined = Some(march::run(section, &bare, &refined, progress)?);
-    solved.tight = Some(march::run(section, &bare, &tight, progress)?);
+    // Side by side: neither knows of the other, so that the answer is the same on any number of threads.
+    let alone = |settings: &Settings| march::run(section, &bare, settings, &mut |_| true);
+    let (refined, tight) = rayon::join(|| alone(&refined), || alone(&tight));
+    solved.refined = Some(refined?);
+    solved.tight = Some(tight?);
     let Some(worse) = cautious_section(section) else {
         solved.without_cautious =
             Some("no cautious answer: there is no lagging to conduct more, and no heater states a tolerance".into());
