@@ -153,3 +153,27 @@ fn the_text_fits_a_terminal_and_its_minus_signs_are_minus_signs() {
         }
     }
 }
+
+/// Every limit that a cold outage passes in a shipped case is passed by every solution of it, from either start: none takes
+/// its first short step for rest.
+#[test]
+fn no_outage_of_a_shipped_case_comes_to_rest_before_it_has_begun() {
+    for (name, passed) in [
+        ("plastic-pipe", 2),
+        ("sample-hose", 1),
+        ("sulphur-line-outage", 2),
+        ("lye-line-outage", 2),
+        ("water-branch-stirred", 4),
+        ("water-branch-outage", 4),
+        ("water-branch-reading", 3),
+        ("flow-stops", 3),
+    ] {
+        let found = ask(Verb::Outage, name);
+        let starts = std::iter::once(&found.answers).chain(found.other_start.as_ref().map(|other| &other.answers));
+        for answers in starts {
+            let reached: Vec<_> = answers.iter().filter(|answer| answer.outcome == Outcome::Reached).collect();
+            assert_eq!(reached.len(), passed, "{name}: {answers:#?}");
+            assert!(reached.iter().all(|answer| answer.cautious_time_s.is_some()), "{name}: {answers:#?}");
+        }
+    }
+}

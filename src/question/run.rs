@@ -7,7 +7,7 @@ use crate::answer::Findings;
 use crate::case::Loaded;
 use crate::duration::{Rounding, words};
 use crate::history::Energy;
-use crate::march::{CyclePhase, End, Plan, Recording};
+use crate::march::{CyclePhase, End, Hold, Plan, Recording};
 use crate::section::Record;
 
 pub(super) fn ask(
@@ -40,7 +40,9 @@ pub(super) fn ask(
     let at_the_end = told::state(&findings.section, &finish);
     let end_words = words(end_s, Rounding::Nearest);
     findings.headline.push(match end {
-        End::Settled if findings.effort.steps <= 1 => format!("Nothing changes: {at_the_end}."),
+        End::Settled if findings.section.events.is_empty() && matches!(hold, Hold::Balance { .. }) => {
+            format!("Nothing changes: {at_the_end}.")
+        }
         End::Settled => format!("At rest after {end_words}: {at_the_end}."),
         End::WeatherEnded => format!("The weather's table ends at {end_words}: {at_the_end}."),
         End::Answered | End::Until => format!("After {end_words}: {at_the_end}."),
