@@ -47,6 +47,8 @@ use view::View;
 pub const SETTLED_K: f64 = 1e-3;
 /// The same for a frozen share.
 pub const SETTLED_SHARE: f64 = 1e-6;
+/// Shortest step that can tell rest, over the section's time scale [-].
+const SHORTEST_AT_REST: f64 = 1e-3;
 /// Steps between two reports of progress.
 const PROGRESS_STEPS: usize = 64;
 /// A recording of every step is thinned beyond this many rows.
@@ -286,6 +288,11 @@ fn switching_label(section: &Section, heater: usize, on: bool) -> String {
 
 /// Whether what is left of the line's change is too small to matter, judged by its last step.
 fn at_rest(runner: &Runner) -> bool {
+    // A step of milliseconds leaves temperatures as they are to their last digit: that is no rest.
+    let (from, to) = runner.last_step();
+    if to - from < SHORTEST_AT_REST * runner.time_scale {
+        return false;
+    }
     let (kelvin, share) = runner.change();
     kelvin < SETTLED_K && share < SETTLED_SHARE
 }

@@ -241,21 +241,15 @@ impl Chain {
         self.first = 0;
     }
 
-    fn end_left(&self, cell: usize, ws: &Workspace) -> End<'_> {
+    /// A cell as the end of a link: its point, and the way from there to its outer (left end) or inner face (right end).
+    fn end(&self, cell: usize, outer: bool, ws: &Workspace) -> End<'_> {
         let region = self.region[cell];
-        let lambda = if self.fronts[cell].is_some() { ws.cuts[cell].lambda_out.0 } else { self.lambda_out[cell] };
-        End {
-            temperature: ws.temperature[cell],
-            theta: ws.theta[cell],
-            lambda,
-            kirchhoff: Some(&self.materials[region].kirchhoff),
-            constant: self.constant_k[region],
-        }
-    }
-
-    fn end_right(&self, cell: usize, ws: &Workspace) -> End<'_> {
-        let region = self.region[cell];
-        let lambda = if self.fronts[cell].is_some() { ws.cuts[cell].lambda_in.0 } else { self.lambda_in[cell] };
+        let lambda = match (self.fronts[cell].is_some(), outer) {
+            (true, true) => ws.cuts[cell].lambda_out.0,
+            (true, false) => ws.cuts[cell].lambda_in.0,
+            (false, true) => self.lambda_out[cell],
+            (false, false) => self.lambda_in[cell],
+        };
         End {
             temperature: ws.temperature[cell],
             theta: ws.theta[cell],
@@ -270,11 +264,11 @@ impl Chain {
         let left = match self.links[link].joint {
             Joint::FixedInside(temperature) => End::fixed(temperature),
             Joint::Closed => End::fixed(0.0),
-            _ => self.end_left(link - 1, ws),
+            _ => self.end(link - 1, true, ws),
         };
         let right = match self.links[link].joint {
             Joint::FixedOutside => End::fixed(outside_k),
-            _ => self.end_right(link, ws),
+            _ => self.end(link, false, ws),
         };
         (left, right)
     }
